@@ -66,8 +66,10 @@ function writeSorted(
   }
 }
 
-function scale(array: Float64Array, factor: number): void {
-  for (let i = 0; i < array.length; i++) array[i] *= factor;
+/** Multiplies by 2^exponent, in two steps: the whole factor may be beyond the range of doubles. */
+function scale(array: Float64Array, exponent: number): void {
+  const half = Math.trunc(exponent / 2);
+  for (let i = 0; i < array.length; i++) array[i] = array[i] * 2 ** half * 2 ** (exponent - half);
 }
 
 /** A solver for matrices of order n with storage of its own; it allocates nothing while solving. See Eigensolver. */
@@ -84,11 +86,9 @@ export function createEigensolver(n: number): Eigensolver {
       );
     }
     const scaled = largest > 0 && (largest > largestUnscaled || largest < smallestUnscaled);
-    const factor = scaled ? 2 ** -Math.floor(Math.log2(largest)) : 1;
+    const exponent = scaled ? Math.floor(Math.log2(largest)) : 0;
     if (scaled) {
-      // Two steps: the factor of a subnormal number is beyond the largest double.
-      scale(matrix, Math.min(factor, 2 ** 1000));
-      if (factor > 2 ** 1000) scale(matrix, factor / 2 ** 1000);
+      scale(matrix, -exponent);
       largest = largestEntry(n, matrix);
     }
     tridiagonalise(reduction, matrix, largest);
@@ -100,6 +100,6 @@ export function createEigensolver(n: number): Eigensolver {
     }
     writeSorted(reduction, ql, order, values, vectors);
     transformBack(reduction, matrix, vectors);
-    if (scaled) for (let i = 0; i < n; i++) values[i] /= factor;
+    if (scaled) scale(values, exponent);
   };
 }

@@ -130,7 +130,8 @@ function multiplyLastRow(n: number, a: Float64Array, k: number, product: Float64
 function centre(a: Float64Array, w: number, k: number, tau: number, product: Float64Array): void {
   let overlap = 0;
   for (let j = 0; j < 2 * k; j++) overlap += product[j] * a[w + j];
-  const share = 0.5 * tau * tau * overlap;
+  // In this order: tau squared may overflow.
+  const share = 0.5 * tau * (tau * overlap);
   for (let j = 0; j < 2 * k; j++) product[j] = tau * product[j] - share * a[w + j];
 }
 
