@@ -1,0 +1,34 @@
+// palette.ts: which colours do pictures use?
+
+/** Ground, text and lines of every picture; text reaches a contrast of 7 on the ground, faint text 4.5. */
+export const tone = {
+  paper: "#fcfcfa",
+  ink: "#22262b",
+  faint: "#5d646d",
+  grid: "#e4e5e1",
+  zero: "#9aa0a6",
+  reference: "#5d646d",
+} as const;
+
+/**
+ * Cold to hot along the axis blue - orange, which every common kind of colour vision keeps; the ends are dark, so that
+ * neighbours differ in lightness as well. Chosen for a contrast of at least 3 on the ground.
+ */
+const ramp = ["#1d2f6f", "#2f80c8", "#178a78", "#d07a12", "#8c1c2b"];
+const chosen: Record<number, number[]> = { 1: [0.6], 2: [1, 3], 3: [0, 1, 3], 4: [0, 1, 3, 4] };
+
+const channels = (hex: string): number[] => [1, 3, 5].map((at) => Number.parseInt(hex.slice(at, at + 2), 16));
+
+/** The ramp at a fractional stop. */
+function between(stop: number): string {
+  const left = Math.min(ramp.length - 2, Math.floor(stop));
+  const [a, b] = [channels(ramp[left]), channels(ramp[left + 1])];
+  const mixed = a.map((value, at) => Math.round(value + (stop - left) * (b[at] - value)));
+  return `#${mixed.map((value) => value.toString(16).padStart(2, "0")).join("")}`;
+}
+
+/** `count` colours (hex) for temperatures in ascending order: distinct for up to 5, a gradual ramp beyond. */
+export function temperatureColours(count: number): string[] {
+  const stops = chosen[count] ?? Array.from({ length: count }, (_, at) => (at * (ramp.length - 1)) / (count - 1));
+  return stops.map(between);
+}

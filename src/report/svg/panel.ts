@@ -1,0 +1,153 @@
+// panel.ts: how is one quantity drawn against the level?
+import * as Plot from "@observablehq/plot";
+import { parseHTML } from "linkedom";
+import { tone } from "./palette.js";
+
+/** One line of a panel, all arrays along the level axis. `error` and `points` may be absent. */
+export interface Trace {
+  colour: string;
+  value: readonly number[];
+  error?: readonly number[];
+  points?: readonly number[];
+}
+
+/** The frame of a panel, px; the axes' tick labels lie outside it, to the left and below. */
+export interface Frame {
+  x: number;
+  y: number;
+  widthPx: number;
+  heightPx: number;
+}
+
+const finite = (values: readonly number[]): number[] => values.filter(Number.isFinite);
+const least = (values: readonly number[]): number => values.reduce((a, b) => Math.min(a, b), Number.POSITIVE_INFINITY);
+const most = (values: readonly number[]): number => values.reduce((a, b) => Math.max(a, b), Number.NEGATIVE_INFINITY);
+
+/**
+ * The vertical range: all values and zero; bars and plain sums may widen it by at most a third of that on each side (a plain sum
+ * can be wrong by orders of magnitude, and must not flatten what the picture is about). Undefined when there is no number.
+ */
+export function verticalRange(traces: readonly Trace[]): [number, number] | undefined {
+  const values = traces.flatMap(({ value }) => finite(value));
+  if (values.length === 0) return undefined;
+  const beside = traces.flatMap(({ value, error, points }) => [
+    ...finite(value.map((middle, e) => middle - (error?.[e] ?? 0))),
+    ...finite(value.map((middle, e) => middle + (error?.[e] ?? 0))),
+    ...finite(points ?? []),
+  ]);
+  const [low, high] = [Math.min(0, least(values)), Math.max(0, most(values))];
+  const room = high > low ? (high - low) / 3 : 1;
+  const bottom = Math.max(Math.min(low, least(beside)), low - room);
+  const top = Math.min(Math.max(high, most(beside)), high + room);
+  if (!(top > bottom)) return [-1, 1];
+  const margin = 0.05 * (top - bottom);
+  return [bottom - (bottom < 0 ? margin : 0), top + (top > 0 ? margin : 0)];
+}
+
+/** Power of ten taken out of the tick labels so that they stay short: 0 within 1e-2 to 1e5. */
+export function tickPower([bottom, top]: readonly [number, number]): number {
+  const size = Math.max(Math.abs(bottom), Math.abs(top));
+  const exponent = Math.floor(Math.log10(size));
+  return exponent >= -2 && exponent < 5 ? 0 : exponent;
+}
+
+/** The marks of one trace: band, plain sum, line; missing numbers leave gaps. */
+function marksOf(levels: readonly number[], { colour, value, error, points }: Trace, scale: number): Plot.Markish[] {
+  const x = [...levels];
+  const band = (sign: number): number[] =>
+    value.map((middle, e) => (middle + sign * (error?.[e] ?? Number.NaN)) * scale);
+  const indices = x.map((_, e) => e);
+  return [
+    ...(error
+      ? [Plot.areaY(indices, { x, y1: band(-1), y2: band(1), fill: colour, fillOpacity: 0.18, clip: true })]
+      : []),
+    ...(points
+      ? [
+          Plot.lineY(indices, {
+            x,
+            y: points.map((sum) => sum * scale),
+            stroke: colour,
+            strokeWidth: 0.8,
+            strokeOpacity: 0.6,
+            strokeDasharray: "1.5 2",
+            clip: true,
+          }),
+        ]
+      : []),
+    Plot.lineY(indices, {
+      x,
+      y: value.map((middle) => middle * scale),
+      stroke: colour,
+      strokeWidth: 1.6,
+      strokeLinejoin: "round",
+      clip: true,
+    }),
+  ];
+}
+
+/** Plot counts its clip paths over the life of the process; here they count within one panel, so that equal input gives equal bytes. */
+function renamedClips(markup: string, prefix: string): string {
+  const names = [...new Set(markup.match(/plot-clip-\d+/g) ?? [])];
+  return names.reduce(
+    (text, name, at) => text.replace(new RegExp(`${name}(?!\\d)`, "g"), `${prefix}-clip-${at + 1}`),
+    markup,
+  );
+}
+
+/** Coordinates to a hundredth of a pixel. */
+function compactPaths(markup: string): string {
+  return markup.replace(/ d="[^"]*"/g, (path) =>
+    path.replace(/-?\d+\.\d{3,}/g, (number) => String(Number(Number(number).toFixed(2)))),
+  );
+}
+
+export interface PanelOptions {
+  /** Tick labels below; only the last panel of a stack has them. */
+  levelTicks: boolean;
+  /** Prefix of the ids in the markup, unique within the page. */
+  idPrefix: string;
+}
+
+/**
+ * SVG markup (a group at the frame's place, no root element) of the traces over `levels` (eV, ascending, relative to the
+ * reference level): grid, zero line, dashed rule at level 0, bands, plain sums, lines, ticks. Undefined when no trace holds a number.
+ */
+export function panelMarkup(
+  levels: readonly number[],
+  traces: readonly Trace[],
+  frame: Frame,
+  options: PanelOptions,
+): string | undefined {
+  const range = verticalRange(traces);
+  if (range === undefined) return undefined;
+  const scale = 10 ** -tickPower(range);
+  const [first, last] = [levels[0], levels[levels.length - 1]];
+  const domainX = last > first ? [first, last] : [first - 0.5, first + 0.5];
+  const ticks = { tickSize: 4, tickPadding: 4, label: null, color: tone.faint };
+  const { document } = parseHTML("<html><body></body></html>");
+  const svg = Plot.plot({
+    document,
+    width: frame.widthPx,
+    height: frame.heightPx,
+    margin: 0,
+    x: { domain: domainX, axis: null },
+    y: { domain: range.map((bound) => bound * scale), axis: null },
+    marks: [
+      Plot.gridX({ stroke: tone.grid, strokeOpacity: 1, ticks: 9 }),
+      Plot.gridY({ stroke: tone.grid, strokeOpacity: 1, ticks: tickCount(frame) }),
+      Plot.ruleY([0], { stroke: tone.zero, strokeWidth: 1 }),
+      ...(domainX[0] <= 0 && domainX[1] >= 0
+        ? [Plot.ruleX([0], { stroke: tone.reference, strokeWidth: 1, strokeDasharray: "5 3" })]
+        : []),
+      ...traces.flatMap((trace) => marksOf(levels, trace, scale)),
+      Plot.axisY({ ...ticks, ticks: tickCount(frame) }),
+      ...(options.levelTicks ? [Plot.axisX({ ...ticks, ticks: 9 })] : []),
+    ],
+  });
+  const inner = compactPaths(
+    renamedClips(String(svg.innerHTML).replace(/<style>[\s\S]*?<\/style>/g, ""), options.idPrefix),
+  );
+  return `<g transform="translate(${frame.x},${frame.y})" font-size="11" text-anchor="middle">${inner}</g>`;
+}
+
+const tickCount = (frame: Frame): number => Math.max(3, Math.round(frame.heightPx / 36));
