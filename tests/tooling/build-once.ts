@@ -19,11 +19,14 @@ function isStale(): boolean {
   return newestChangeMs(join(repository, "src")) > statSync(stamp).mtimeMs;
 }
 
-/** Builds dist when a source is newer than the last build; throws with the compiler's words when that fails. */
+/**
+ * Builds dist when a source is newer than the last build. Type errors are printed and do not stop the tests: the
+ * compiler writes its output all the same, and the build step of `npm test` fails by itself.
+ */
 export function buildOnce(): void {
   if (!isStale()) return;
   const built = spawnSync("npm", ["run", "--silent", "build"], { cwd: repository, encoding: "utf8" });
-  if (built.status !== 0) throw new Error(`npm run build failed:\n${built.stdout}${built.stderr}`);
+  if (built.status !== 0) console.warn(`npm run build failed:\n${built.stdout}${built.stderr}`);
 }
 
 /** What vitest calls before the first test. */

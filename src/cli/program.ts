@@ -1,0 +1,38 @@
+// program.ts: which commands and which global options are there?
+import { readFileSync } from "node:fs";
+import { Command } from "commander";
+import type { Context } from "./context.js";
+
+/** A file of commands/ exports one of these. */
+export type Register = (program: Command, context: Context) => void;
+
+/** In the order in which help shows them. */
+const commands: readonly Register[] = [];
+
+function packageVersion(): string {
+  const text = readFileSync(new URL("../../package.json", import.meta.url), "utf8");
+  return (JSON.parse(text) as { version: string }).version;
+}
+
+/** The whole command line. Commander neither prints errors nor exits: it throws, and outcome.ts has the word. */
+export function createProgram(context: Context): Command {
+  const program = new Command("tidegauge")
+    .description("Reads off a band grid how the Hall responses of a material run with the level, and how sure that is.")
+    .version(packageVersion(), "--version", "print the version")
+    .option("--json", "one JSON document on stdout instead of text")
+    .option("--out <DIR>", "write files into this directory")
+    .option("--quiet", "no progress and no notes on stderr")
+    .helpOption("-h, --help", "help; after a command, help on it with worked examples")
+    .helpCommand(false)
+    .showSuggestionAfterError(true)
+    .configureHelp({ showGlobalOptions: true })
+    .configureOutput({ outputError: () => {} })
+    .exitOverride()
+    .addHelpText("after", exitStatusHelp);
+  for (const register of commands) register(program, context);
+  return program;
+}
+
+const exitStatusHelp = `
+Exit status: 0 done; 2 wrong usage; 3 bad input data; 4 a demanded accuracy was not reached; 130 interrupted; 1 anything else.
+Data go to stdout, progress and warnings to stderr. Colour only on a terminal, never with NO_COLOR.`;
