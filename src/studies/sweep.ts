@@ -1,0 +1,179 @@
+// sweep.ts: how do the responses run with level and temperature, and how sure is that? Options, computation, result.
+import { z } from "zod";
+import { usageFault } from "../base/errors.js";
+import { productVersion } from "../base/version.js";
+import { defaultResponses, planResponses } from "../bands/responses.js";
+import { responseUnit } from "../bands/units.js";
+import {
+  type ColumnCurves,
+  columnTable,
+  densityOfStates,
+  occupiedCurves,
+  type SpectraFacts,
+  spreadCurves,
+} from "../curves/assemble.js";
+import type { CurvesResult, ResponseCurve, Table } from "../curves/result.js";
+import { cutTasks, type SweepJob } from "../engine/job.js";
+import { countBelow, type ReferenceLevel, referenceLevel } from "../engine/reference.js";
+import { type RunOptions, runTasks } from "../engine/run.js";
+import type { GridFacts } from "../grid/grid.js";
+import { openGrid } from "../grid/open.js";
+import { planAxis } from "../spectrum/axis.js";
+import type { Sections } from "../spectrum/sections.js";
+import { cellArea, cellVolume } from "../zone/lattice.js";
+import { smallestSubMeshes } from "../zone/mesh.js";
+
+/** Options of a sweep; the same object is what a job file holds and what every result embeds. */
+export const sweepOptions = z.strictObject({
+  response: z.array(z.string()).min(1).max(200).optional(),
+  from: z.number().min(-1000).max(1000).default(-1),
+  to: z.number().min(-1000).max(1000).default(1),
+  points: z.int().min(1).max(20001).default(201),
+  temperature: z.array(z.number().min(0).max(100000)).min(1).max(64).default([0, 300]),
+  method: z.enum(["cells", "points"]).default("cells"),
+  degenerate: z.number().min(0).max(10).default(1e-5),
+  broaden: z.number().min(0).max(100).default(0),
+  unit: z.string().max(40).optional(),
+});
+
+export type SweepOptions = z.infer<typeof sweepOptions>;
+
+/** Told to every reader of a result. */
+export const intrinsicOnly = "intrinsic only, rigid band";
+
+interface SweepPlan {
+  readonly job: SweepJob;
+  readonly facts: GridFacts;
+  readonly reference: ReferenceLevel;
+  readonly options: SweepOptions;
+}
+
+/** Checks the options against the grid and plans the job. Throws usage and data Faults. */
+export function planSweep(directory: string, options: SweepOptions): SweepPlan {
+  if (options.points === 1 ? options.from !== options.to : !(options.from < options.to))
+    throw usageFault(
+      `--from ${options.from} --to ${options.to} --points ${options.points} is no window`,
+      "Let --from lie below --to, or give --points 1 with both equal.",
+    );
+  const { facts } = openGrid(directory);
+  const plan = planResponses(options.response ?? defaultResponses(facts), facts);
+  const reference = referenceLevel(facts);
+  const temperatures = [...new Set(options.temperature)].sort((a, b) => a - b);
+  const window = {
+    fromEv: reference.levelEv + options.from,
+    toEv: reference.levelEv + options.to,
+    points: options.points,
+  };
+  const job: SweepJob = {
+    directory,
+    method: options.method,
+    plan,
+    denominator: { degenerateEv: options.degenerate, broadenEv: options.broaden },
+    axis: planAxis(window, temperatures),
+  };
+  for (const column of plan.columns) unitOf(column.carrier, facts, options);
+  return { job, facts, reference, options };
+}
+
+const unitOf = (carrier: string, facts: GridFacts, options: SweepOptions) => responseUnit(carrier, facts, options.unit);
+
+/** Computes a sweep. The result does not depend on the number of workers. */
+export async function sweep(directory: string, options: SweepOptions, run: RunOptions): Promise<CurvesResult> {
+  const planned = planSweep(directory, options);
+  const sections = await runTasks({ kind: "mesh", job: planned.job }, cutTasks(planned.facts.points), run);
+  return assembleResult(planned, sections);
+}
+
+function spectraFacts({ job, facts }: SweepPlan): SpectraFacts {
+  return {
+    axis: job.axis,
+    columns: job.plan.columns.length + 1,
+    points: facts.points,
+    electronsPerBand: facts.electronsPerBand,
+    dimension: facts.periodic,
+    subMeshes: smallestSubMeshes(facts),
+  };
+}
+
+function responseCurves(planned: SweepPlan, sections: Sections, curves: ColumnCurves): ResponseCurve[] {
+  const { job, facts, options } = planned;
+  const known = spectraFacts(planned);
+  const points = job.method === "points" ? curves : occupiedCurves(sections, "points", known);
+  const spread = spreadCurves(sections, job.method, known);
+  return job.plan.columns.map(({ name, carrier }, column): ResponseCurve => {
+    const { unit, factor } = unitOf(carrier, facts, options);
+    const sampling = columnTable(spread, column, Math.abs(factor));
+    return {
+      name,
+      unit,
+      value: columnTable(curves, column, factor),
+      error: sampling,
+      error_sampling: sampling,
+      error_model: sampling.map((row) => row.map(() => 0)),
+      points: columnTable(points, column, factor),
+    };
+  });
+}
+
+/** Value of a row at level 0 (the reference), linear between two levels; undefined when the window does not hold it. */
+function atReference(row: readonly number[], levelEv: readonly number[]): number | undefined {
+  const upper = levelEv.findIndex((level) => level >= 0);
+  if (upper < 0 || levelEv[0] > 0) return undefined;
+  if (upper === 0) return row[0];
+  const part = levelEv[upper] / (levelEv[upper] - levelEv[upper - 1]);
+  return row[upper] * (1 - part) + row[upper - 1] * part;
+}
+
+/** Electrons counted from those that the reference level holds at the lowest temperature asked, by the same method. */
+function dopingTable(electrons: Table, levelEv: readonly number[], { facts, reference }: SweepPlan): Table {
+  const neutral = atReference(electrons[0], levelEv) ?? facts.electrons ?? countBelow(facts, reference.levelEv);
+  return electrons.map((row) => row.map((value) => value - neutral));
+}
+
+/** One carrier per cell as a density: per cm^3, or per cm^2 for a layer. */
+function densityPerCell({ periodic, vectorsA }: GridFacts): number {
+  return periodic === 3 ? 1e24 / cellVolume(vectorsA) : 1e16 / cellArea(vectorsA);
+}
+
+function notesOf({ job, facts, reference, options }: SweepPlan): string[] {
+  const notes = [
+    intrinsicOnly,
+    `levels are relative to ${reference.levelEv.toFixed(6)} eV, ${reference.origin}`,
+    `pairs of bands closer than ${options.degenerate} eV are taken as degenerate`,
+  ];
+  if (options.broaden > 0) notes.push(`denominators are broadened by ${options.broaden} eV`);
+  if (job.method === "cells") notes.push(`energy resolution at 0 K: ${(job.axis.nodes.stepEv * 1000).toPrecision(3)} meV`);
+  if (smallestSubMeshes(facts) === undefined)
+    notes.push("no error bar: the mesh contains no regular sub-mesh (its divisions share no factor 2, 3 or 5)");
+  return notes;
+}
+
+function assembleResult(planned: SweepPlan, sections: Sections): CurvesResult {
+  const { job, facts, reference, options } = planned;
+  const known = spectraFacts(planned);
+  const curves = occupiedCurves(sections, job.method, known);
+  const levels = Array.from(job.axis.levelsEv, (_, i) =>
+    options.points === 1 ? options.from : options.from + (i * (options.to - options.from)) / (options.points - 1),
+  );
+  const electrons = columnTable(curves, known.columns - 1, facts.electronsPerBand);
+  const doping = dopingTable(electrons, levels, planned);
+  const density = densityPerCell(facts);
+  const { title, sha256, bands, divisions, periodic, points } = facts;
+  return {
+    format: "tidegauge.curves/1",
+    version: productVersion,
+    grid: { title, sha256, bands, divisions: [...divisions], periodic, points },
+    job: { study: "sweep", ...options },
+    reference_eV: reference.levelEv,
+    level_eV: levels,
+    temperature_K: [...job.axis.temperaturesK],
+    electrons_per_cell: electrons,
+    doping_per_cell: doping,
+    doping_density: doping.map((row) => row.map((value) => value * density)),
+    doping_density_unit: periodic === 3 ? "per_cm3" : "per_cm2",
+    states_per_eV: densityOfStates(sections, job.method, known),
+    responses: responseCurves(planned, sections, curves),
+    sampling: { method: job.method, stored: points, samples: points, deepest: 0 },
+    notes: notesOf(planned),
+  };
+}

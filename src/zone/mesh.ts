@@ -1,0 +1,55 @@
+// mesh.ts: turns a flat mesh index into k and back, and names the cell around a mesh point; knows nothing of energies.
+import type { GridFacts, Triple } from "../grid/grid.js";
+import { reciprocalVectors, type Vectors } from "./lattice.js";
+
+export type MeshFacts = Pick<GridFacts, "vectorsA" | "divisions" | "offset" | "periodic">;
+
+/** (i1, i2, i3) of a flat index; i3 runs fastest. */
+export function meshIndices(flat: number, divisions: Triple): Triple {
+  const i3 = flat % divisions[2];
+  const rest = Math.floor(flat / divisions[2]);
+  return [Math.floor(rest / divisions[1]), rest % divisions[1], i3];
+}
+
+/** Fractional coordinates of a mesh point in b1, b2, b3. */
+export function fractionalK(flat: number, mesh: MeshFacts): Triple {
+  const index = meshIndices(flat, mesh.divisions);
+  return [0, 1, 2].map((j) => (index[j] + mesh.offset[j]) / mesh.divisions[j]) as unknown as Triple;
+}
+
+/** Cartesian k (1/angstrom) of fractional coordinates. */
+export function cartesianK(fractional: Triple, reciprocal: Vectors): Triple {
+  const k = (axis: 0 | 1 | 2): number =>
+    fractional[0] * reciprocal[0][axis] + fractional[1] * reciprocal[1][axis] + fractional[2] * reciprocal[2][axis];
+  return [k(0), k(1), k(2)];
+}
+
+/** Edges b_j / n_j of the cell around each mesh point, Cartesian rows, 1/angstrom. A layer has two, a crystal three. */
+export function cellEdges(mesh: MeshFacts): readonly Triple[] {
+  const reciprocal = reciprocalVectors(mesh.vectorsA);
+  return reciprocal.slice(0, mesh.periodic).map((b, j): Triple => {
+    const n = mesh.divisions[j];
+    return [b[0] / n, b[1] / n, b[2] / n];
+  });
+}
+
+/** The contained sub-meshes of stride s: how many there are, and to which one a flat index belongs. */
+export interface SubMeshes {
+  readonly stride: number;
+  readonly count: number;
+}
+
+/** Smallest prime up to 5 that divides the mesh in every periodic direction; undefined when there is none. */
+export function smallestSubMeshes(mesh: MeshFacts): SubMeshes | undefined {
+  const active = mesh.divisions.slice(0, mesh.periodic);
+  const stride = [2, 3, 5].find((s) => active.every((n) => n % s === 0 && n > s));
+  return stride === undefined ? undefined : { stride, count: stride ** active.length };
+}
+
+/** Which of the sub-meshes a mesh point belongs to. */
+export function subMeshOf(flat: number, mesh: MeshFacts, sub: SubMeshes): number {
+  const index = meshIndices(flat, mesh.divisions);
+  let coset = 0;
+  for (let j = 0; j < mesh.periodic; j++) coset = coset * sub.stride + (index[j] % sub.stride);
+  return coset;
+}
