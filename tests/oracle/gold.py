@@ -12,8 +12,8 @@ rydberg and bohr. Method: Mehl and Papaconstantopoulos, Phys. Rev. B 54, 4519 (1
   F(R) = 1 / (1 + exp((R - cutoff) / width + 5)), zero beyond the cutoff
   rho = sum_neighbours exp(-lambda2 R) F(R);  on-site a + b rho^(2/3) + c rho^(4/3) + d rho^2
   two-centre (a + b R + c R^2) exp(-d2 R) F(R)
-The angular parts are built from tensors, not from the table: s = 1, p = unit vectors, d = symmetric traceless matrices D
-with D:D = 1 (the orbital r.D.r). Bloch sums exp(i k.R); Loewdin orthogonalisation at each k; xi L.S on d after it; spin
+The angular parts are built from tensors, not from the table: s = 1, p = unit vectors, d = symmetric traceless
+matrices D with D:D = 1 (the orbital r.D.r). Bloch sums exp(i k.R); Loewdin orthogonalisation at each k; xi L.S on d after it; spin
 sigma/2; orbital moment L on p and d in the orthogonalised basis. Basis: 9 orbitals x (up, down), up first.
 """
 import argparse
@@ -87,17 +87,19 @@ class Crystal:
         self.a = parameters["lattice"]["a_angstrom"]
         self.electrons = parameters["electrons"]
         lattice = FCC * self.a / BOHR
-        reach = np.array([[i, j, k] for i in range(-5, 6) for j in range(-5, 6) for k in range(-5, 6) if (i, j, k) != (0, 0, 0)])
-        r = reach @ lattice
+        r = (np.indices((11, 11, 11)).reshape(3, -1).T - 5) @ lattice
+        r = r[np.any(r != 0, axis=1)]
         length = np.linalg.norm(r, axis=1)
         self.r = r[length < parameters["cutoff"]]
         length = length[length < parameters["cutoff"]]
         cut = 1 / (1 + np.exp((length - parameters["cutoff"]) / parameters["width"] + 5))
         rho = np.sum(np.exp(-parameters["lambda2"] * length) * cut)
-        level = {l: q["a"] + q["b"] * rho ** (2 / 3) + q["c"] * rho ** (4 / 3) + q["d"] * rho**2 for l, q in parameters["onsite"].items()}
-        self.onsite = np.diag([level["s"]] + [level["p"]] * 3 + [level["d"]] * 5)
-        radial = lambda q, i: (q["a"] + q["b"] * length[i] + q["c"] * length[i] ** 2) * np.exp(-q["d2"] * length[i]) * cut[i]
-        table = lambda kind: np.array([two_centre(r / length[i], {x: radial(q, i) for x, q in parameters[kind].items()}) for i, r in enumerate(self.r)])
+        third = rho ** (2 / 3)
+        level = lambda q: q["a"] + q["b"] * third + q["c"] * third**2 + q["d"] * third**3
+        self.onsite = np.diag(np.repeat([level(parameters["onsite"][l]) for l in "spd"], [1, 3, 5]))
+        radial = lambda q, x: (q["a"] + q["b"] * x + q["c"] * x**2) * np.exp(-q["d2"] * x)
+        at = lambda kind, x: {name: radial(q, x) for name, q in parameters[kind].items()}
+        table = lambda kind: np.array([f * two_centre(r / x, at(kind, x)) for r, x, f in zip(self.r, length, cut)])
         self.h, self.s = table("H"), table("S")
         orbital = angular_momentum()
         pauli = np.array([[[0, 1], [1, 0]], [[0, -1j], [1j, 0]], [[1, 0], [0, -1]]])
@@ -115,8 +117,8 @@ class Crystal:
         phase = np.exp(1j * (self.r @ k))
         total = lambda t, w: np.tensordot(w, t, 1)
         h, s = self.onsite + total(self.h, phase), np.eye(9) + total(self.s, phase)
-        slopes = [(total(self.h, 1j * self.r[:, a] * phase), total(self.s, 1j * self.r[:, a] * phase)) for a in range(3)]
-        return h, s, slopes
+        waves = [1j * self.r[:, a] * phase for a in range(3)]
+        return h, s, [(total(self.h, w), total(self.s, w)) for w in waves]
 
     def hamiltonian(self, k):
         """H~ (eV) and dH~/dk (eV angstrom) of one spin without spin-orbit coupling; k in 1/angstrom."""
@@ -164,21 +166,21 @@ RESPONSES = ["charge:xy", "spin:xy:z", "spin:yz:x", "spin:hall", "orbital:xy:z",
 
 
 def sample(crystal, fractions, degenerate):
-    """Per k point: energies and, per degenerate group, traces of v and summed curvatures (angstrom^2): free of gauge."""
+    """Per k point: energies and, per degenerate group, traces of v and summed curvatures in angstrom^2: gauge-free."""
     document = []
     for fraction in fractions:
         energy, velocity, moments = crystal.at(fraction @ crystal.reciprocal())
         sets = groups(energy, degenerate)
         total = lambda values: [float(np.sum(values[s])) for s in sets]
         one = {name: m[None] for name, m in moments.items()}
-        omega = {r: total(oracle.response_curvature(r, energy[None], velocity[None], one, degenerate)[0]) for r in RESPONSES}
+        each = lambda r: oracle.response_curvature(r, energy[None], velocity[None], one, degenerate)[0]
         document.append(
             {
                 "fraction": fraction.tolist(),
                 "energy_eV": energy.tolist(),
                 "groups": [s.tolist() for s in sets],
                 "velocity_trace_eVA": [total(np.diagonal(v).real) for v in velocity],
-                "curvature_A2": omega,
+                "curvature_A2": {r: total(each(r)) for r in RESPONSES},
             }
         )
     return document
@@ -206,7 +208,8 @@ def mesh_values(crystal, options):
         if mu is None:
             mu = chemical_potential(energy, options.electrons or crystal.electrons, options.filling or temperature)
         filled = oracle.occupation(energy, mu, temperature)
-        row = {"temperature_K": temperature, "mu_eV": mu, "mu_Ry": mu / RYDBERG, "electrons": filled.sum() / len(energy)}
+        row = {"temperature_K": temperature, "mu_eV": mu, "mu_Ry": mu / RYDBERG}
+        row["electrons"] = filled.sum() / len(energy)
         for r in names:
             row[r] = oracle.prefactor(r, False, volume)[0] * np.sum(filled * omega[r]) / len(energy)
         result["rows"].append(row)

@@ -50,7 +50,9 @@ class Stored:
     """One array of the grid, k first: read(first, count) gives it in the order of `axes`, converted."""
 
     def __init__(self, directory, entry, sizes, axes, factor):
-        order = entry["axes"]
+        order = list(entry["axes"])
+        if "direction" in axes and "direction" not in order and sizes["direction"] == 1:
+            order.insert(1, "direction")  # a scalar moment may leave it out
         if order[0] != "k" or sorted(order) != sorted(axes):
             raise SystemExit(f"axes {order}: this script wants k first, then any order of {axes[1:]}")
         self.turn = [order.index(axis) for axis in axes]
@@ -137,7 +139,7 @@ def prefactor(name, layer, measure):
 
 
 def curvature(energy, current, field, degenerate):
-    """Omega[k, n] of the current operator [k, bra, ket] against the field's velocity; pairs within `degenerate` skipped."""
+    """Omega[k, n] of a current operator [k, bra, ket] against the field's velocity; pairs within `degenerate` skipped."""
     gap = energy[:, :, None] - energy[:, None, :]
     skip = (np.abs(gap) < degenerate) | (gap == 0)
     inverse = np.where(skip, 0.0, 1.0 / np.where(skip, 1.0, gap) ** 2)
