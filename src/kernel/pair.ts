@@ -16,7 +16,7 @@ export interface PairPass {
    * velocities and moments that the products name must be there.
    */
   run(point: PointRef, out: Float64Array): void;
-  /** Band slopes dE/dk, eV angstrom, out[band * 3 + direction]; zero for a velocity that was not read. */
+  /** The function `slopes` of this file. */
   slopes(point: PointRef, out: Float64Array): void;
 }
 
@@ -143,7 +143,8 @@ function weigh(bands: number, size: number, matrix: MatrixRef, inverse: Float64A
   }
 }
 
-function writeSlopes(point: PointRef, out: Float64Array): void {
+/** Band slopes dE/dk, eV angstrom, out[band * 3 + direction]; zero for a velocity that was not read. */
+export function slopes(point: PointRef, out: Float64Array): void {
   for (let direction = 0; direction < 3; direction++) {
     const matrix = point.velocity[direction];
     for (let n = 0; n < point.bands; n++) {
@@ -189,5 +190,5 @@ export function createPairPass(bands: number, products: readonly Product[], deno
       for (let n = 0; n < bands; n++) out[index * bands + n] = omega[index * size + n];
     }
   };
-  return { run, slopes: writeSlopes };
+  return { run, slopes };
 }
