@@ -1,0 +1,94 @@
+// open.ts: turns a directory into a band grid whose manifest and files have been checked against each other.
+import { statSync } from "node:fs";
+import { join, resolve } from "node:path";
+import { dataFault } from "../base/errors.js";
+import { factsOf, type ManifestFacts } from "./checks.js";
+import { manifestFault } from "./explain.js";
+import { fingerprint } from "./fingerprint.js";
+import type { GridFacts } from "./grid.js";
+import { parseJson, quoted, readManifestBytes, reasonOf } from "./jsontext.js";
+import { type Manifest, manifestName, manifestSchema } from "./manifest.js";
+import { type ArrayPlan, planArray } from "./plan.js";
+import { energyUnits, hessianUnits, momentUnits, velocityUnits } from "./units.js";
+
+/** An open band grid: facts and where its numbers lie. Plain data, safe to send to a worker; holds no file open. */
+export interface Grid {
+  readonly facts: GridFacts;
+  /** energy, velocity, then moments in the manifest's order, then the hessian where it is an array. */
+  readonly arrays: readonly ArrayPlan[];
+  /** Names of arrays whose slowest axis is not k: they are read in many small pieces. */
+  readonly slowArrays: readonly string[];
+  /** Whatever the manifest keeps under provenance. */
+  readonly provenance: unknown;
+}
+
+/**
+ * Opens the band grid in `directory`: manifest, files, byte lengths and headers are checked, the numbers are not.
+ * Throws a data Fault that says field or file, what was found, and what was expected.
+ */
+export function openGrid(directory: string): Grid {
+  checkDirectory(directory);
+  const bytes = readManifestBytes(join(directory, manifestName));
+  const manifest = parseManifest(bytes);
+  const facts = factsOf(manifest, manifestName);
+  const arrays = planArrays(directory, manifest, facts);
+  const size = arrays.flatMap((array) => array.files).reduce((sum, file) => sum + file.bytes, 0);
+  return {
+    facts: { directory: resolve(directory), ...facts, sha256: fingerprint(bytes, arrays), bytes: size },
+    arrays,
+    slowArrays: arrays.filter((array) => array.axes[0] !== "k" && array.points > 1).map((array) => array.name),
+    provenance: manifest.provenance,
+  };
+}
+
+/** The checked manifest in `bytes`; throws a data Fault for the first thing wrong with it. */
+export function parseManifest(bytes: Uint8Array): Manifest {
+  const value = parseJson(bytes, manifestName);
+  const result = manifestSchema.safeParse(value);
+  if (!result.success) throw manifestFault(manifestSchema, value, result.error.issues, manifestName);
+  return result.data;
+}
+
+function checkDirectory(directory: string): void {
+  const cure = `Name a directory that holds a ${manifestName}.`;
+  let isDirectory: boolean;
+  try {
+    isDirectory = statSync(directory).isDirectory();
+  } catch (error) {
+    throw dataFault(`${quoted(directory)} cannot be opened: ${reasonOf(error)}`, cure, error);
+  }
+  if (!isDirectory) throw dataFault(`${quoted(directory)} is not a directory`, cure);
+}
+
+function planArrays(directory: string, manifest: Manifest, facts: ManifestFacts): ArrayPlan[] {
+  const { energy, velocity, moments, hessian } = manifest.arrays;
+  const { points, bands } = facts;
+  const taken = new Map<string, string>();
+  const plans = [
+    planArray(
+      directory,
+      energy,
+      { name: "energy", role: "energy", points, bands, components: 1, factor: energyUnits[energy.unit] },
+      taken,
+    ),
+    planArray(
+      directory,
+      velocity,
+      { name: "velocity", role: "velocity", points, bands, components: 3, factor: velocityUnits[velocity.unit] },
+      taken,
+    ),
+  ];
+  for (const moment of facts.moments) {
+    const entry = moments[moment.name];
+    const request = { name: `moments.${moment.name}`, role: "moment" as const, points, bands };
+    const shape = { components: moment.directions, factor: momentUnits[entry.unit] };
+    plans.push(planArray(directory, entry, { ...request, ...shape }, taken));
+  }
+  if (typeof hessian === "object") {
+    const factor = hessianUnits[hessian.unit];
+    plans.push(
+      planArray(directory, hessian, { name: "hessian", role: "hessian", points, bands, components: 6, factor }, taken),
+    );
+  }
+  return plans;
+}

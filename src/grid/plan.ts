@@ -1,0 +1,233 @@
+// plan.ts: where the numbers of one array lie: files, byte offsets, order of axes, type, factor to canonical units.
+import { closeSync, openSync, readSync } from "node:fs";
+import { dataFault } from "../base/errors.js";
+import { type FoundFile, findFiles, sameFile } from "./files.js";
+import { quoted, reasonOf } from "./jsontext.js";
+import type { ArrayEntry, Axis, NumberType } from "./manifest.js";
+import { isNpy, type NpyHeader, npyPrefixBytes, parseNpy } from "./npy.js";
+
+/** One file of an array. It holds the stored k points firstPoint ... firstPoint + points - 1. */
+export interface FilePlan {
+  readonly name: string;
+  readonly path: string;
+  readonly bytes: number;
+  readonly firstPoint: number;
+  readonly points: number;
+  /** Bytes before the first number. */
+  readonly dataOffset: number;
+}
+
+export type ArrayRole = "energy" | "velocity" | "moment" | "hessian";
+
+/** One array, ready to be read; plain data. */
+export interface ArrayPlan {
+  /** As in the manifest: "energy", "velocity", "moments.spin", "hessian". */
+  readonly name: string;
+  readonly role: ArrayRole;
+  /** Order in which the numbers lie in each file, slowest first. */
+  readonly axes: readonly Axis[];
+  readonly points: number;
+  readonly bands: number;
+  /** Matrices per k point: directions or pairs; 1 for energies. */
+  readonly components: number;
+  readonly type: NumberType;
+  readonly byteOrder: "little" | "big";
+  /** Multiply by this to get canonical units. */
+  readonly factor: number;
+  readonly files: readonly FilePlan[];
+  /** SHA-256 per file as the manifest gives them, lower case; undefined where it gives none. */
+  readonly digests: readonly string[] | undefined;
+}
+
+/** Bytes of one element: a complex number is one element. */
+export const elementBytes: Readonly<Record<NumberType, number>> = {
+  float32: 4,
+  float64: 8,
+  complex64: 8,
+  complex128: 16,
+};
+
+/** True for the complex types. */
+export function isComplex(type: NumberType): boolean {
+  return type === "complex64" || type === "complex128";
+}
+
+/** The size of `axis` in an array of which `points` k points are taken. */
+export function axisSize(plan: Pick<ArrayPlan, "bands" | "components">, axis: Axis, points: number): number {
+  if (axis === "k") return points;
+  return axis === "direction" || axis === "pair" ? plan.components : plan.bands;
+}
+
+/** Bytes of one k point of an array. */
+export function bytesPerPoint(plan: Pick<ArrayPlan, "bands" | "components" | "axes" | "type">): number {
+  return plan.axes.reduce((product, axis) => product * axisSize(plan, axis, 1), elementBytes[plan.type]);
+}
+
+/** What planArray needs to know of an array beside its manifest entry. */
+export interface ArrayRequest {
+  readonly name: string;
+  readonly role: ArrayRole;
+  readonly points: number;
+  readonly bands: number;
+  readonly components: number;
+  readonly factor: number;
+}
+
+/**
+ * Finds the files of an array and checks type, axes and every byte length. `taken` maps file identities to the names
+ * used by other arrays and is added to. Throws a data Fault that names array and file.
+ */
+export function planArray(
+  directory: string,
+  entry: ArrayEntry,
+  request: ArrayRequest,
+  taken: Map<string, string>,
+): ArrayPlan {
+  checkType(entry, request);
+  checkAxes(entry, request);
+  const found = findFiles(directory, `arrays.${request.name}`, entry.files);
+  for (const file of found) {
+    const other = taken.get(file.identity);
+    if (other !== undefined) throw sameFile(`arrays.${request.name}`, other, file.name);
+  }
+  for (const file of found) taken.set(file.identity, file.name);
+  const layout = { ...request, axes: entry.axes, type: entry.type, byteOrder: entry.byteOrder };
+  const files = placeFiles(layout, found);
+  return { ...layout, files, digests: digestsOf(entry, request.name, files.length) };
+}
+
+function checkType(entry: ArrayEntry, request: ArrayRequest): void {
+  if (request.role === "energy" && isComplex(entry.type)) {
+    throw dataFault(
+      `arrays.${request.name}.type is ${quoted(entry.type)}: eigenvalues are real`,
+      'Use "float64" or "float32".',
+    );
+  }
+}
+
+function checkAxes(entry: ArrayEntry, request: ArrayRequest): void {
+  const component: Axis = request.role === "hessian" ? "pair" : "direction";
+  const full: Axis[] = request.role === "energy" ? ["k", "band"] : ["k", component, "bra", "ket"];
+  const given = [...entry.axes].sort().join();
+  if (given === [...full].sort().join()) return;
+  // A scalar moment has one direction; its axis may be left out.
+  if (request.components === 1 && given === "bra,k,ket") return;
+  throw dataFault(
+    `arrays.${request.name}.axes is ${quoted(entry.axes)}: it must hold each of ${quoted(full)} once, in any order`,
+    "List the axes in the order in which the numbers lie in the file, slowest first.",
+  );
+}
+
+type Layout = Omit<ArrayPlan, "files" | "digests">;
+
+function placeFiles(plan: Layout, found: readonly FoundFile[]): FilePlan[] {
+  const perPoint = bytesPerPoint(plan);
+  if (!Number.isSafeInteger(perPoint * plan.points)) {
+    throw dataFault(`arrays.${plan.name}: its size cannot be counted in bytes`, "Correct mesh.divisions or bands.");
+  }
+  let firstPoint = 0;
+  const files: FilePlan[] = [];
+  for (const file of found) {
+    const header = headerOf(plan, file);
+    const dataOffset = header?.dataOffset ?? 0;
+    const bytes = file.bytes - dataOffset;
+    const whole = found.length === 1;
+    // The header first: a wrong type explains a wrong length better than the length does.
+    if (header !== undefined) checkHeader(plan, file.name, header, whole ? plan.points : Math.floor(bytes / perPoint));
+    if (whole) checkWhole(plan, file.name, bytes);
+    else if (bytes <= 0 || bytes % perPoint !== 0) {
+      throw dataFault(
+        `arrays.${plan.name}: file ${quoted(file.name)} holds ${bytes} bytes of numbers, not a whole number of k points of ${perPoint} bytes (${shapeText(plan, 1)})`,
+        "Write whole k points to each file; check bands, type and axes.",
+      );
+    }
+    const points = bytes / perPoint;
+    files.push({ name: file.name, path: file.path, bytes: file.bytes, firstPoint, points, dataOffset });
+    firstPoint += points;
+  }
+  if (firstPoint !== plan.points) {
+    const difference = firstPoint - plan.points;
+    throw dataFault(
+      `arrays.${plan.name}: its ${found.length} files hold ${firstPoint} k points; expected ${plan.points}, so ${Math.abs(difference)} ${difference < 0 ? "are missing" : "are too many"}`,
+      "Check that all files are there, and no other file matches the pattern.",
+    );
+  }
+  return files;
+}
+
+function checkWhole(plan: Layout, name: string, bytes: number): void {
+  const expected = bytesPerPoint(plan) * plan.points;
+  if (bytes === expected) return;
+  const difference = bytes < expected ? `${expected - bytes} are missing` : `${bytes - expected} are too many`;
+  throw dataFault(
+    `arrays.${plan.name}: file ${quoted(name)} holds ${bytes} bytes of numbers; expected ${expected} (${shapeText(plan, plan.points)}), so ${difference}`,
+    "Check mesh.divisions, bands, type and axes, and that the file was written to its end without record marks.",
+  );
+}
+
+function shapeText(plan: Layout, points: number): string {
+  const sizes = plan.axes.map((axis) => `${axisSize(plan, axis, points)} ${axis}`);
+  return `${sizes.join(" x ")} x ${elementBytes[plan.type]} bytes`;
+}
+
+/** The .npy header of a file; undefined for raw numbers. */
+function headerOf(plan: Layout, file: FoundFile): NpyHeader | undefined {
+  const where = `arrays.${plan.name}: file ${quoted(file.name)}`;
+  const buffer = Buffer.alloc(Math.min(file.bytes, npyPrefixBytes));
+  let length: number;
+  try {
+    const handle = openSync(file.path, "r");
+    try {
+      length = readSync(handle, buffer, 0, Math.min(buffer.length, 16), 0);
+      if (isNpy(buffer)) length = readSync(handle, buffer, 0, buffer.length, 0);
+    } finally {
+      closeSync(handle);
+    }
+  } catch (error) {
+    throw dataFault(`${where} cannot be read: ${reasonOf(error)}`, "Check its permissions.", error);
+  }
+  const prefix = buffer.subarray(0, length);
+  if (!isNpy(prefix) && !file.name.toLowerCase().endsWith(".npy")) return undefined;
+  const header = parseNpy(prefix);
+  if (typeof header === "string") throw dataFault(`${where}: ${header}`, "Write it again with numpy.save.");
+  return header;
+}
+
+/** The .npy type code of a type and byte order. */
+export function npyType(type: NumberType, byteOrder: "little" | "big"): string {
+  const codes = { float32: "f4", float64: "f8", complex64: "c8", complex128: "c16" } as const;
+  return `${byteOrder === "little" ? "<" : ">"}${codes[type]}`;
+}
+
+function checkHeader(plan: Layout, name: string, header: NpyHeader, points: number): void {
+  const where = `arrays.${plan.name}: the .npy header of ${quoted(name)}`;
+  const type = npyType(plan.type, plan.byteOrder);
+  if (header.descr !== type) {
+    throw dataFault(
+      `${where} says type ${quoted(header.descr)}; expected ${quoted(type)} (${plan.type}, ${plan.byteOrder} endian)`,
+      "Make type and byteOrder in the manifest agree with the file.",
+    );
+  }
+  const expected = plan.axes.map((axis) => axisSize(plan, axis, points));
+  // In Fortran order the first index of the shape runs fastest; `axes` is slowest first.
+  const shape = header.fortranOrder ? [...header.shape].reverse() : header.shape;
+  if (shape.length !== expected.length || shape.some((size, index) => size !== expected[index])) {
+    const order = header.fortranOrder ? " in Fortran order, slowest first" : "";
+    throw dataFault(
+      `${where} says shape (${shape.join(", ")})${order}; expected (${expected.join(", ")}) = (${plan.axes.join(", ")})`,
+      "Make axes in the manifest agree with the order in which the numbers lie in the file.",
+    );
+  }
+}
+
+function digestsOf(entry: ArrayEntry, name: string, files: number): string[] | undefined {
+  if (entry.sha256 === undefined) return undefined;
+  const digests = typeof entry.sha256 === "string" ? [entry.sha256] : entry.sha256;
+  if (digests.length !== files) {
+    throw dataFault(
+      `arrays.${name}.sha256 holds ${digests.length} digests for ${files} files`,
+      "Give one digest per file, in natural order of the names.",
+    );
+  }
+  return digests.map((digest) => digest.toLowerCase());
+}
