@@ -44,6 +44,26 @@ function opening(result: CurvesResult): string {
   );
 }
 
+/** The answer in a sentence, for the first response at its first temperature. */
+function headline(result: CurvesResult): string {
+  const [response] = result.responses;
+  if (response === undefined) return "No response was asked for.";
+  const [levels, value, error] = [result.level_eV, response.value[0], response.error[0]];
+  const here = readingAt(levels, value, error, 0);
+  const most = largestOf(levels, value, error);
+  const [name, unit] = [cleanLine(response.name), cleanLine(response.unit)];
+  if (most === undefined) return `${name} has no numbers in this window.`;
+  const added = result.doping_per_cell[0][most.index];
+  const doped = Number.isFinite(added)
+    ? `, which takes ${plain(Math.abs(added), 3)} electrons per cell ${added < 0 ? "fewer" : "more"}`
+    : "";
+  const start = here === undefined ? "" : `is ${withError(here.value, here.error)} ${unit} at the reference level and `;
+  return (
+    `At ${plain(result.temperature_K[0])} K ${name} ${start}reaches ${withError(most.value, most.error)} ${unit}, its largest ` +
+    `magnitude in the window, at ${plain(most.levelEv, 4)} eV${doped}.`
+  );
+}
+
 /** One line for each response and temperature. */
 function rowsOf(result: CurvesResult, response: ResponseCurve): string[][] {
   const levels = result.level_eV;
@@ -66,7 +86,7 @@ const columns: Column[] = [
   { heading: "response", align: "left" },
   { heading: "unit", align: "left" },
   { heading: "T (K)", align: "right" },
-  { heading: "at the level 0", align: "right" },
+  { heading: "at 0 eV", align: "right" },
   { heading: "largest", align: "right" },
   { heading: "at (eV)", align: "right" },
   { heading: "doping/cell", align: "right" },
@@ -92,7 +112,9 @@ export function cautions(result: CurvesResult): string[] {
     ...(edge.size > 0
       ? [`Largest at the edge of the window, and may grow beyond it: ${named(edge)}. A wider --from --to shows.`]
       : []),
-    ...(unsure.size > 0 ? [`Not told apart from zero at the level 0 (value within two bars): ${named(unsure)}.`] : []),
+    ...(unsure.size > 0
+      ? [`Not told apart from zero at the reference level (value within two bars): ${named(unsure)}.`]
+      : []),
     ...(barless.size > 0 ? [`No bar could be estimated at some levels (shown as "?"): ${named(barless)}.`] : []),
   ];
 }
@@ -139,6 +161,7 @@ export function curvesText(result: CurvesResult, options: TextOptions = {}): str
   const drawn = options.charts === false ? [] : [charts(result, width)];
   return `${[
     wrapped(opening(result), width),
+    wrapped(headline(result), width),
     table(rows, columns),
     wrapped(legend, width),
     ...drawn,

@@ -1,10 +1,10 @@
 // curves.ts: what does the picture of a sweep show, and where does everything stand on it?
 import type { CurvesResult } from "../../curves/result.js";
 import { cleanLine, escapeXml } from "../clean.js";
-import { grouped, plain } from "../numbers.js";
 import { fittingLines, fontFamily, superscript, textLine, textWidthPx, unitInPicture } from "./lettering.js";
 import { temperatureColours, tone } from "./palette.js";
 import { type Frame, panelMarkup, type Trace, tickPower, verticalRange } from "./panel.js";
+import { edgePx, footerAt, legendAt, levelAxisAt, type Placed, ticksPx, titleAt } from "./surroundings.js";
 
 export interface CurvesSvgOptions {
   /** Plain text; default: the grid's title. */
@@ -23,15 +23,6 @@ interface Panel {
   heightPx: number;
   traces: Trace[];
 }
-
-/** Markup and where the next element may begin. */
-interface Placed {
-  markup: string;
-  bottomPx: number;
-}
-
-const edgePx = 24;
-const ticksPx = 58;
 
 const quantities: Record<string, string> = {
   charge: "Anomalous Hall conductivity",
@@ -65,47 +56,6 @@ function panelsOf(result: CurvesResult, colours: readonly string[]): Panel[] {
     ...responses,
     { words: "Density of states", name: "", unit: "states/eV per cell", heightPx: 90, traces: states },
   ];
-}
-
-function titleAt(text: string, widthPx: number, topPx: number): Placed {
-  const lines = fittingLines(text, widthPx - 2 * edgePx, 17);
-  const markup = lines.map((line, at) =>
-    textLine(line, edgePx, topPx + 17 + 22 * at, { sizePx: 17, colour: tone.ink, bold: true }),
-  );
-  return { markup: markup.join("\n"), bottomPx: topPx + 22 * lines.length };
-}
-
-/** Swatch and label of each temperature, band and plain sum, flowing into as many rows as they need. */
-function legendAt(result: CurvesResult, colours: readonly string[], widthPx: number, topPx: number): Placed {
-  const line = (colour: string, more: string): string =>
-    `<line x1="0" x2="22" y1="-4" y2="-4" stroke="${colour}" ${more}/>`;
-  const banded = result.responses.some(({ error }) => error.some((row) => row.some((bar) => bar > 0)));
-  const items = [
-    ...result.temperature_K.map((temperatureK, t) => ({
-      label: `${plain(temperatureK)} K`,
-      swatch: line(colours[t], 'stroke-width="2.4"'),
-    })),
-    ...(banded
-      ? [
-          {
-            label: "value ± one bar",
-            swatch: `<rect x="0" y="-10" width="22" height="11" fill="${tone.faint}" fill-opacity="0.25"/>`,
-          },
-        ]
-      : []),
-    ...(result.sampling.method !== "points"
-      ? [{ label: "plain mesh sum", swatch: line(tone.faint, 'stroke-width="1.2" stroke-dasharray="1.5 2"') }]
-      : []),
-  ];
-  let [x, y] = [edgePx, topPx + 16];
-  const markup = items.map(({ label, swatch }) => {
-    const spacePx = 28 + textWidthPx(label, 12) + 16;
-    if (x > edgePx && x + spacePx > widthPx - edgePx) [x, y] = [edgePx, y + 19];
-    const placed = `<g transform="translate(${x},${y})">${swatch}${textLine(label, 28, 0, { sizePx: 12, colour: tone.ink })}</g>`;
-    x = Math.round(x + spacePx);
-    return placed;
-  });
-  return { markup: `<g class="legend">${markup.join("")}</g>`, bottomPx: y + 8 };
 }
 
 /** What stands above a panel: the quantity in bold, then response and unit, on one line where they fit. */
@@ -162,47 +112,6 @@ function panelAt(
     markup: `<g class="panel" role="group" aria-label="${escapeXml(label)}">${heading.markup}${drawn}</g>`,
     bottomPx: frame.y + frame.heightPx,
   };
-}
-
-/** Below the last panel: the mark of the reference level under its rule, and the name of the axis. */
-function levelAxisAt(levels: readonly number[], widthPx: number, topPx: number): Placed {
-  const [left, right] = [edgePx + ticksPx, widthPx - edgePx];
-  const [first, last] = [levels[0], levels[levels.length - 1]];
-  const share = last > first ? -first / (last - first) : first === 0 ? 0.5 : -1;
-  const x = Math.round(left + share * (right - left));
-  const mark = textLine("Fermi level", Math.min(Math.max(x, left + 20), right - 30), topPx + 34, {
-    sizePx: 11,
-    colour: tone.faint,
-    anchor: "middle",
-  });
-  const inside = share >= 0 && share <= 1;
-  const name = textLine(
-    "Level relative to the reference (Fermi) level, in eV",
-    (left + right) / 2,
-    topPx + (inside ? 54 : 40),
-    {
-      sizePx: 12,
-      colour: tone.ink,
-      anchor: "middle",
-    },
-  );
-  return { markup: `<g class="level-axis">${inside ? mark : ""}${name}</g>`, bottomPx: topPx + (inside ? 60 : 46) };
-}
-
-/** The statement of scope, the sampling, and the notes beyond the first. */
-function footerAt(result: CurvesResult, widthPx: number, topPx: number): Placed {
-  const { grid, sampling } = result;
-  const mesh = grid.divisions.slice(0, grid.periodic).join(" × ");
-  const texts = [
-    "intrinsic only, rigid band — screening numbers",
-    `mesh ${mesh}, ${grid.bands} bands; method ${sampling.method}, ${grouped(sampling.samples)} samples; reference level ${plain(result.reference_eV)} eV; tidegauge ${cleanLine(result.version)}`,
-    ...result.notes.filter((note) => !/^intrinsic only, rigid band\.?$/.test(note)),
-  ];
-  const lines = texts.flatMap((text) => fittingLines(text, widthPx - 2 * edgePx, 11));
-  const markup = lines.map((line, at) =>
-    textLine(line, edgePx, topPx + 11 + 15 * at, { sizePx: 11, colour: tone.faint }),
-  );
-  return { markup: `<g class="footer">${markup.join("")}</g>`, bottomPx: topPx + 15 * lines.length };
 }
 
 /**

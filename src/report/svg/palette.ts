@@ -11,11 +11,11 @@ export const tone = {
 } as const;
 
 /**
- * Cold to hot along the axis blue - orange, which every common kind of colour vision keeps; the ends are dark, so that
- * neighbours differ in lightness as well. Chosen for a contrast of at least 3 on the ground.
+ * Cold to hot. Chosen so that the five differ by more than 20 in CIE L*a*b* for the common kinds of colour vision (the test
+ * simulates them) and have a contrast of at least 3 on the ground.
  */
-const ramp = ["#1d2f6f", "#2f80c8", "#178a78", "#d07a12", "#8c1c2b"];
-const chosen: Record<number, number[]> = { 1: [0.6], 2: [1, 3], 3: [0, 1, 3], 4: [0, 1, 3, 4] };
+const ramp = ["#1d2f6f", "#2468b0", "#1f9e89", "#d07a12", "#8c1c2b"];
+const chosen: Record<number, number[]> = { 1: [1], 2: [1, 3], 3: [1, 3, 4], 4: [1, 2, 3, 4] };
 
 const channels = (hex: string): number[] => [1, 3, 5].map((at) => Number.parseInt(hex.slice(at, at + 2), 16));
 

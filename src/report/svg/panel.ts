@@ -51,11 +51,14 @@ export function tickPower([bottom, top]: readonly [number, number]): number {
   return exponent >= -2 && exponent < 5 ? 0 : exponent;
 }
 
+/** Leaves a gap where a number is not finite. */
+const orGap = (value: number): number => (Number.isFinite(value) ? value : Number.NaN);
+
 /** The marks of one trace: band, plain sum, line; missing numbers leave gaps. */
 function marksOf(levels: readonly number[], { colour, value, error, points }: Trace, scale: number): Plot.Markish[] {
   const x = [...levels];
   const band = (sign: number): number[] =>
-    value.map((middle, e) => (middle + sign * (error?.[e] ?? Number.NaN)) * scale);
+    value.map((middle, e) => orGap((middle + sign * (error?.[e] ?? Number.NaN)) * scale));
   const indices = x.map((_, e) => e);
   return [
     ...(error
