@@ -20,7 +20,7 @@ export function diagonaliseReal9(matrix: Float64Array, vectors: Float64Array): b
         all += square;
         if (j < i) off += square;
       }
-    if (!(off > 1e-34 * all)) return Number.isFinite(all);
+    if (!(off > 1e-32 * all)) return Number.isFinite(all);
     for (let p = 0; p < n - 1; p++) for (let q = p + 1; q < n; q++) rotate(matrix, vectors, p, q);
   }
   return false;
@@ -49,4 +49,7 @@ function rotate(m: Float64Array, vectors: Float64Array, p: number, q: number): v
     vectors[n * p + i] = c * u - s * v;
     vectors[n * q + i] = s * u + c * v;
   }
+  // Zero up to round-off; exactly zero lets the sweeps end.
+  m[n * p + q] = 0;
+  m[n * q + p] = 0;
 }
