@@ -2,9 +2,9 @@
 import { endianness } from "node:os";
 import ndarray from "ndarray";
 import ops from "ndarray-ops";
+import { type ArrayPlan, elementBytes, isComplex } from "./arrays.js";
 import type { MatrixBlock } from "./grid.js";
 import type { Stage } from "./pieces.js";
-import { type ArrayPlan, elementBytes, isComplex } from "./plan.js";
 
 const machine = endianness() === "LE" ? "little" : "big";
 

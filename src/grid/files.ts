@@ -31,12 +31,13 @@ export function naturalOrder(a: string, b: string): number {
 export function findFiles(directory: string, array: string, files: string | readonly string[]): FoundFile[] {
   const root = realpathSync(directory);
   const entries = typeof files === "string" ? [files] : files;
-  const names = entries.flatMap((entry) => namesOfEntry(root, array, entry));
-  if (names.length > mostFiles) {
-    throw dataFault(
-      `${array}: ${names.length} files are named; at most ${mostFiles} are read`,
-      "Join them into fewer.",
-    );
+  const names: string[] = [];
+  for (const entry of entries) {
+    for (const name of namesOfEntry(root, array, entry)) names.push(name);
+    // Counted as they come: many patterns that match many files must not fill the memory.
+    if (names.length > mostFiles) {
+      throw dataFault(`${array}: more than ${mostFiles} files are named`, "Join them into fewer, and name each once.");
+    }
   }
   const found = names.sort(naturalOrder).map((name) => examine(root, array, name));
   const seen = new Map<string, string>();

@@ -2,8 +2,8 @@
 import { createHash } from "node:crypto";
 import { closeSync, openSync, readSync } from "node:fs";
 import { dataFault } from "../base/errors.js";
+import type { ArrayPlan, FilePlan } from "./arrays.js";
 import { quoted, reasonOf } from "./jsontext.js";
-import type { ArrayPlan, FilePlan } from "./plan.js";
 
 const samples = 16;
 const sampleBytes = 4096;

@@ -1,8 +1,8 @@
 // handles.ts: reads exact runs of bytes from many files while keeping few of them open.
 import { closeSync, openSync, readSync } from "node:fs";
 import { dataFault } from "../base/errors.js";
+import type { FilePlan } from "./arrays.js";
 import { quoted, reasonOf } from "./jsontext.js";
-import type { FilePlan } from "./plan.js";
 
 /** Open files of one reader. */
 export interface Handles {

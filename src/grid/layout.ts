@@ -1,9 +1,9 @@
 // layout.ts: how a band grid that is being written is laid out: manifest entries, file names, pieces, from a short description.
 import { join } from "node:path";
 import { usageFault } from "../base/errors.js";
+import { type ArrayPlan, type ArrayRole, bytesPerPoint, type FilePlan, isComplex } from "./arrays.js";
 import type { HessianKind, MomentFacts, Triple } from "./grid.js";
 import { type ArrayEntry, type Axis, formatName, type NumberType } from "./manifest.js";
-import { type ArrayPlan, type ArrayRole, bytesPerPoint, type FilePlan, isComplex } from "./plan.js";
 import { energyUnits, hessianUnits, momentUnits, velocityUnits } from "./units.js";
 
 /** What a band grid to be written holds; units as in GridFacts. At least one of fermiEv and electrons must be given. */

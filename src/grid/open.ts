@@ -2,13 +2,14 @@
 import { statSync } from "node:fs";
 import { join, resolve } from "node:path";
 import { dataFault } from "../base/errors.js";
+import type { ArrayPlan } from "./arrays.js";
 import { factsOf, type ManifestFacts } from "./checks.js";
 import { manifestFault } from "./explain.js";
 import { fingerprint } from "./fingerprint.js";
 import type { GridFacts } from "./grid.js";
 import { parseJson, quoted, readManifestBytes, reasonOf } from "./jsontext.js";
 import { type Manifest, manifestName, manifestSchema } from "./manifest.js";
-import { type ArrayPlan, planArray } from "./plan.js";
+import { planArray } from "./plan.js";
 import { energyUnits, hessianUnits, momentUnits, velocityUnits } from "./units.js";
 
 /** An open band grid: facts and where its numbers lie. Plain data, safe to send to a worker; holds no file open. */

@@ -1,6 +1,7 @@
 // pieces.ts: which contiguous pieces of an array's files make up a block of k points, and where each goes in memory.
+
+import { type ArrayPlan, axisSize, elementBytes, type FilePlan } from "./arrays.js";
 import type { Axis } from "./manifest.js";
-import { type ArrayPlan, axisSize, elementBytes, type FilePlan } from "./plan.js";
 
 /** A contiguous run of bytes, in a file and in the memory of the block ("stage"). */
 export type PieceVisitor = (file: FilePlan, filePosition: number, stagePosition: number, bytes: number) => void;

@@ -1,12 +1,12 @@
 // reader.ts: streams a band grid from disk as blocks of k points in canonical units, checked as they come.
 import ndarray from "ndarray";
 import { dataFault, usageFault } from "../base/errors.js";
+import { type ArrayPlan, elementBytes } from "./arrays.js";
 import { createScratch, energiesOf, matricesOf, type Scratch, stageBytes } from "./canonical.js";
 import type { Block, BlockReader, MatrixBlock, Want } from "./grid.js";
 import { createHandles, type Handles } from "./handles.js";
 import type { Grid } from "./open.js";
 import { forEachPiece, type Stage, stageOf } from "./pieces.js";
-import { type ArrayPlan, elementBytes } from "./plan.js";
 import { type Finding, verifyEnergies, verifyMatrices } from "./verify.js";
 
 export { type Grid, openGrid } from "./open.js";

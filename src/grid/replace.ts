@@ -12,9 +12,9 @@ import {
 import { basename, dirname, join, resolve } from "node:path";
 import { type Fault, usageFault } from "../base/errors.js";
 import { quoted, readManifestBytes, reasonOf } from "./jsontext.js";
+import { writerName } from "./layout.js";
 import { manifestName } from "./manifest.js";
 import { openGrid, parseManifest } from "./open.js";
-import { writerName } from "./layout.js";
 
 /**
  * The directory to write to, links resolved. Throws a usage Fault when something stands there that may not be replaced:

@@ -1,6 +1,8 @@
 // verify.ts: are the numbers of a block what they claim: finite, ascending, Hermitian? One pass over each matrix.
+
+import type { ArrayPlan } from "./arrays.js";
 import type { Block, GridFacts, MatrixBlock } from "./grid.js";
-import type { ArrayPlan } from "./plan.js";
+import { firstNotFinite, type MatrixScan, scanMatrix, worstElement } from "./hermitian.js";
 
 /** Energies may fall from one band to the next by this much, eV: the round-off of a diagonalisation. */
 export const ascendingToleranceEv = 1e-9;
@@ -27,16 +29,6 @@ export interface Finding {
 
 /** Takes one finding; may throw. */
 export type Report = (finding: Finding) => void;
-
-/** Largest deviation from Hermiticity met in one matrix. */
-export interface Asymmetry {
-  /** Largest |Re M_ij - Re M_ji| or |Im M_ij + Im M_ji|, canonical units. */
-  readonly deviation: number;
-  /** Largest |Re| or |Im| of an element. */
-  readonly largest: number;
-  readonly bra: number;
-  readonly ket: number;
-}
 
 /** Mesh indices (i1, i2, i3) of flat index `point`; i3 runs fastest. */
 export function meshIndices(divisions: readonly number[], point: number): [number, number, number] {
@@ -103,7 +95,12 @@ export function storedBits(plan: ArrayPlan): 32 | 64 {
   return plan.type === "float32" || plan.type === "complex64" ? 32 : 64;
 }
 
-/** Checks the matrices of one component of a block; `measure`, where given, gets the asymmetry of each finite matrix. */
+const scan: MatrixScan = { sum: 0, largest: 0, deviation: 0 };
+
+/**
+ * Checks the matrices of one component of a block. `measure`, where given, gets the scan of each finite matrix; the scan
+ * object is used again.
+ */
 export function verifyMatrices(
   facts: GridFacts,
   plan: ArrayPlan,
@@ -111,93 +108,28 @@ export function verifyMatrices(
   matrices: MatrixBlock,
   component: number,
   report: Report,
-  measure?: (point: number, asymmetry: Asymmetry) => void,
+  measure?: (point: number, scan: MatrixScan) => void,
 ): void {
   const { bands, count, first } = block;
+  const { data } = matrices;
   const tolerance = hermitianTolerance[storedBits(plan)];
   for (let index = 0; index < count; index++) {
     const offset = matrices.offset + index * matrices.stride;
-    scanMatrix(matrices.data, offset, bands, scan);
-    if (!Number.isFinite(scan.sum)) {
-      const bad = firstNotFinite(matrices.data, offset, bands);
-      if (bad !== undefined) {
-        const fault = { problem: "not finite", component, bands: bad } as const;
-        report(finding(facts, plan, first + index, fault, "an element is NaN or infinite"));
-        continue;
-      }
+    scanMatrix(data, offset, bands, scan);
+    const bad = Number.isFinite(scan.sum) ? undefined : firstNotFinite(data, offset, bands);
+    if (bad !== undefined) {
+      const fault = { problem: "not finite", component, bands: bad } as const;
+      report(finding(facts, plan, first + index, fault, "an element is NaN or infinite"));
+      continue;
     }
+    measure?.(first + index, scan);
     const limit = tolerance * Math.max(scan.largest, smallestScale);
-    if (scan.deviation > limit || measure !== undefined) {
-      const asymmetry = locate(matrices.data, offset, bands);
-      measure?.(first + index, asymmetry);
-      if (scan.deviation > limit) {
-        const { deviation, bra, ket } = asymmetry;
-        const fault = { problem: "not Hermitian", component, bands: [bra, ket] } as const;
-        const values = `it differs from its conjugate transpose by ${deviation.toExponential(2)}, allowed is ${limit.toExponential(2)}`;
-        report(finding(facts, plan, first + index, fault, values));
-      }
-    }
+    if (scan.deviation <= limit) continue;
+    const fault = { problem: "not Hermitian", component, bands: worstElement(data, offset, bands) } as const;
+    const sizes = [scan.deviation, limit].map((value) => value.toExponential(2));
+    const values = `it differs from its conjugate transpose by ${sizes[0]}, allowed is ${sizes[1]}`;
+    report(finding(facts, plan, first + index, fault, values));
   }
-}
-
-const scan = { sum: 0, largest: 0, deviation: 0 };
-
-/**
- * Kernel, one pass over the matrix at data[offset]: sum of |Re| + |Im| (NaN or infinite when an element is), largest |Re|
- * or |Im|, largest deviation from Hermiticity. In tiles, so that rows and columns of a large matrix stay in the cache.
- */
-function scanMatrix(data: Float64Array, offset: number, n: number, out: typeof scan): void {
-  const tile = 32;
-  let sum = 0;
-  let largest = 0;
-  let deviation = 0;
-  for (let rows = 0; rows < n; rows += tile) {
-    const rowEnd = rows + tile < n ? rows + tile : n;
-    for (let columns = rows; columns < n; columns += tile) {
-      const columnEnd = columns + tile < n ? columns + tile : n;
-      for (let i = rows; i < rowEnd; i++) {
-        for (let j = i > columns ? i : columns; j < columnEnd; j++) {
-          const upper = offset + 2 * (i * n + j);
-          const lower = offset + 2 * (j * n + i);
-          const re = data[upper];
-          const im = data[upper + 1];
-          const size = Math.abs(re) + Math.abs(im);
-          sum += size + Math.abs(data[lower]) + Math.abs(data[lower + 1]);
-          const dRe = Math.abs(re - data[lower]);
-          const dIm = Math.abs(im + data[lower + 1]);
-          if (dRe > deviation) deviation = dRe;
-          if (dIm > deviation) deviation = dIm;
-          if (size > largest) largest = size;
-        }
-      }
-    }
-  }
-  out.sum = sum;
-  out.largest = largest;
-  out.deviation = deviation;
-}
-
-function locate(data: Float64Array, offset: number, n: number): Asymmetry {
-  const worst = { deviation: 0, largest: 0, bra: 0, ket: 0 };
-  for (let bra = 0; bra < n; bra++) {
-    for (let ket = 0; ket < n; ket++) {
-      const at = offset + 2 * (bra * n + ket);
-      const mirror = offset + 2 * (ket * n + bra);
-      worst.largest = Math.max(worst.largest, Math.abs(data[at]), Math.abs(data[at + 1]));
-      if (ket < bra) continue;
-      const deviation = Math.max(Math.abs(data[at] - data[mirror]), Math.abs(data[at + 1] + data[mirror + 1]));
-      if (deviation > worst.deviation) Object.assign(worst, { deviation, bra, ket });
-    }
-  }
-  return worst;
-}
-
-function firstNotFinite(data: Float64Array, offset: number, n: number): [number, number] | undefined {
-  for (let element = 0; element < n * n; element++) {
-    const at = offset + 2 * element;
-    if (!Number.isFinite(data[at]) || !Number.isFinite(data[at + 1])) return [Math.floor(element / n), element % n];
-  }
-  return undefined;
 }
 
 function finding(
