@@ -20,7 +20,7 @@ const response = z.looseObject({
 });
 
 /** The border check of curves.json; fields that a later version adds pass through unchanged. */
-export const curvesSchema = z.looseObject({
+const curvesSchema = z.looseObject({
   format: z.literal("tidegauge.curves/1"),
   version: z.string(),
   grid: z.looseObject({

@@ -20,12 +20,12 @@ const methodWords = {
 } as const;
 
 /** e.g. "24 x 24 x 24"; a layer shows its two directions. */
-export function meshWords(grid: CurvesResult["grid"]): string {
+function meshWords(grid: CurvesResult["grid"]): string {
   return grid.divisions.slice(0, grid.periodic).join(" x ");
 }
 
 /** How the zone was sampled, as one sentence. */
-export function samplingWords({ grid, sampling }: CurvesResult): string {
+function samplingWords({ grid, sampling }: CurvesResult): string {
   const spent = sampling.samples === sampling.stored ? "" : `, ${grouped(sampling.samples)} samples`;
   const depth = sampling.deepest > 0 ? `, cells halved up to ${sampling.deepest} times` : "";
   return `Mesh ${meshWords(grid)}, ${grouped(sampling.stored)} stored points of ${grid.bands} bands; ${sampling.method}: ${methodWords[sampling.method]}${spent}${depth}.`;
@@ -93,7 +93,7 @@ const columns: Column[] = [
 ];
 
 /** What a reader must know before using the numbers of the table; empty when there is nothing. */
-export function cautions(result: CurvesResult): string[] {
+function cautions(result: CurvesResult): string[] {
   const levels = result.level_eV;
   const edge = new Set<string>();
   const unsure = new Set<string>();

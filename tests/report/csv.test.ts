@@ -1,18 +1,11 @@
 // csv.test.ts: curves.csv has the promised columns, keeps every number and loads where it is said to load.
-import { spawnSync } from "node:child_process";
 import { describe, expect, it } from "vitest";
 import { curvesColumns, curvesCsv } from "../../src/report/csv.js";
+import { pythonWith, runPython } from "./python.js";
 import { sweep } from "./sweep.js";
 
-const python = "/usr/bin/python3";
-const hasNumpy = spawnSync(python, ["-c", "import numpy"]).status === 0;
-
-/** Runs a script that reads the text from its standard input and prints JSON. */
-function run(script: string, input: string): unknown {
-  const done = spawnSync(python, ["-c", script], { input, encoding: "utf8" });
-  expect(done.stderr).toBe("");
-  return JSON.parse(done.stdout);
-}
+const python = pythonWith("numpy") ?? "";
+const run = (script: string, input: string): unknown => JSON.parse(runPython(python, script, input));
 
 describe("curvesCsv", () => {
   const result = sweep({ responses: ["spin:xy:z", "charge:xy"], temperatureK: [0, 300], levels: 41 });
@@ -67,7 +60,7 @@ describe("curvesCsv", () => {
     expect(first.endsWith('"HYPERLINK(""x""), next [(hbar/e) S/cm]","HYPERLINK(""x""), next error"')).toBe(true);
   });
 
-  it.skipIf(!hasNumpy)("loads with numpy.genfromtxt by name and with numpy.loadtxt", () => {
+  it.skipIf(python === "")("loads with numpy.genfromtxt by name and with numpy.loadtxt", () => {
     const script = `
 import sys, io, json, numpy as np
 text = sys.stdin.read()
@@ -82,7 +75,7 @@ print(json.dumps([list(d.dtype.names), len(d), float(d['level_eV'][40]), repr(fl
     expect([shape, allNans]).toEqual([[82, 11], missing]);
   });
 
-  it.skipIf(!hasNumpy)("loads with Python's csv module", () => {
+  it.skipIf(python === "")("loads with Python's csv module", () => {
     const script = `
 import sys, csv, json
 r = list(csv.DictReader(sys.stdin))

@@ -119,7 +119,6 @@ describe("curvesText", () => {
   });
 
   it("draws no charts when they are not wanted, and then stays in ASCII", () => {
-    // biome-ignore lint/suspicious/noControlCharactersInRegex: the range of ASCII is the point
     expect(curvesText(result, { charts: false })).toMatch(/^[\x0a\x20-\x7e]*$/);
     expect(text).toMatch(/█/);
   });
@@ -138,7 +137,6 @@ describe("curvesText", () => {
     const odd = sweep({ title: "red\u001b[31m title\r\nnext\u202e", levels: 5 });
     odd.responses[0].name = "spin\u0007:xy:z";
     odd.notes.push("a\tnote\u0000");
-    // biome-ignore lint/suspicious/noControlCharactersInRegex: control characters are what is looked for
     expect(curvesText(odd)).not.toMatch(/[\x00-\x09\x0b-\x1f\x7f-\x9f\u202e]/);
   });
 });
