@@ -151,6 +151,8 @@ export function planResponses(names: readonly string[], facts: Facts): ResponseP
 
 /** What a sweep computes when no response is named: charge xy and the rotational means of the axial moments. */
 export function defaultResponses(facts: Facts): string[] {
-  const vector = facts.moments.filter((m) => m.directions === 3 && !(m.name === "spin" && facts.electronsPerBand === 2));
+  const vector = facts.moments.filter(
+    (m) => m.directions === 3 && !(m.name === "spin" && facts.electronsPerBand === 2),
+  );
   return ["charge:xy", ...vector.map((m) => (facts.periodic === 3 ? `${m.name}:hall` : `${m.name}:xy:z`))];
 }

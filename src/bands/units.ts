@@ -22,47 +22,66 @@ const layerFactor = (facts: Facts): number => (2 * Math.PI) / cellArea(facts.vec
 const thickFactor = (facts: Facts): number =>
   (e2OverHbarS / (cellArea(facts.vectorsA) * length(facts.vectorsA[2]))) * perAngstromInPerCm;
 
-/** Each family of units: the flux quantum part, then the choices, as [label, multiple of the first]. */
-function choices(carrier: string, facts: Facts): [string, number][] {
-  const dimensionless = facts.moments.find((m) => m.name === carrier)?.unit === "1";
-  const flux = carrier === "charge" || dimensionless ? [""] : ["(hbar/e) ", "(hbar/2e) "];
-  const conductivity: [string, number][] = flux.flatMap((prefix, i): [string, number][] => {
-    const bulk = (facts.periodic === 3 ? bulkFactor(facts) : thickFactor(facts)) * (i === 1 ? 2 : 1);
-    return [
-      [`${prefix}S/cm`, bulk],
-      [`${prefix}S/m`, bulk * 100],
-    ];
+/** A unit on offer, and the labels that mean it: its own, and for what carries no hbar those of the moments in the same sweep. */
+interface Choice {
+  readonly unit: string;
+  readonly factor: number;
+  readonly labels: readonly string[];
+}
+
+const bulkUnits: readonly (readonly [unit: string, multiple: number])[] = [
+  ["S/cm", 1],
+  ["S/m", 100],
+];
+const fluxes: readonly (readonly [prefix: string, multiple: number])[] = [
+  ["(hbar/e) ", 1],
+  ["(hbar/2e) ", 2],
+];
+
+/** What carries no hbar: e^2/h for a layer, and S/cm. */
+function plainChoices(facts: Facts, bulk: number): Choice[] {
+  const conductivity = bulkUnits.map(([unit, multiple]): Choice => {
+    return { unit, factor: bulk * multiple, labels: [unit, ...fluxes.map(([prefix]) => prefix + unit)] };
   });
   if (facts.periodic === 3) return conductivity;
-  const sheet: [string, number] = carrier === "charge" || dimensionless ? ["e^2/h", layerFactor(facts)] : ["e/2pi", layerFactor(facts)];
-  return [sheet, ...conductivity];
+  return [{ unit: "e^2/h", factor: layerFactor(facts), labels: ["e^2/h", "e/2pi"] }, ...conductivity];
 }
+
+/** A moment in hbar: e/2pi for a layer, and (hbar/e) S/cm. */
+function momentChoices(facts: Facts, bulk: number): Choice[] {
+  const conductivity = fluxes.flatMap(([prefix, double]) =>
+    bulkUnits.map(([unit, multiple]): Choice => {
+      return { unit: prefix + unit, factor: bulk * double * multiple, labels: [prefix + unit] };
+    }),
+  );
+  if (facts.periodic === 3) return conductivity;
+  return [{ unit: "e/2pi", factor: layerFactor(facts), labels: ["e/2pi"] }, ...conductivity];
+}
+
+function choices(carrier: string, facts: Facts): Choice[] {
+  const bulk = facts.periodic === 3 ? bulkFactor(facts) : thickFactor(facts);
+  const dimensionless = facts.moments.find((m) => m.name === carrier)?.unit === "1";
+  return carrier === "charge" || dimensionless ? plainChoices(facts, bulk) : momentChoices(facts, bulk);
+}
+
+const bare = (label: string): string => label.replace(/[\s()]/g, "").toLowerCase();
 
 /**
  * Prefactor and unit of a response. Charge: sigma_ab = -(e^2/hbar) integral f Omega; a moment's current per field carries no
  * charge factor, hence the other sign, and is told in (hbar/e) S/cm (a layer: e/2pi, charge e^2/h); in (hbar/2e) the
  * number doubles. Bands of two electrons count twice. `wanted` is one of the labels, e.g. "(hbar/2e) S/cm"; blanks may be
- * left out. Throws a usage Fault for a unit that fits no response of this kind.
+ * left out; a moment's unit, asked of what carries no hbar, means its counterpart there. Throws a usage Fault for a unit
+ * that fits no response of this kind.
  */
 export function responseUnit(carrier: string, facts: Facts, wanted?: string): ResponseUnit {
   const known = choices(carrier, facts);
-  const bare = (label: string): string => label.replace(/[\s()]/g, "").toLowerCase();
-  const suffix = wanted === undefined ? undefined : bare(wanted);
   const found =
-    suffix === undefined
-      ? known[0]
-      : (known.find(([label]) => bare(label) === suffix) ?? (carrier === "charge" ? chargeTwin(known, suffix) : undefined));
+    wanted === undefined ? known[0] : known.find(({ labels }) => labels.some((label) => bare(label) === bare(wanted)));
   if (found === undefined)
     throw usageFault(
       `unit "${wanted}" does not fit ${carrier} on this grid`,
-      `Use one of: ${known.map(([label]) => label).join(", ")}.`,
+      `Use one of: ${known.map(({ unit }) => unit).join(", ")}.`,
     );
   const sign = carrier === "charge" ? -1 : 1;
-  return { unit: found[0], factor: sign * found[1] * facts.electronsPerBand };
-}
-
-/** A unit named for the moments, e.g. (hbar/2e) S/m or e/2pi, means its own counterpart for the charge in the same sweep. */
-function chargeTwin(known: readonly [string, number][], suffix: string): [string, number] | undefined {
-  if (suffix === "e/2pi") return known.find(([label]) => label === "e^2/h");
-  return known.find(([label]) => suffix.endsWith(label.toLowerCase()) && label !== "e^2/h");
+  return { unit: found.unit, factor: sign * found.factor * facts.electronsPerBand };
 }
