@@ -172,7 +172,7 @@ export function createLocalModel(spec: LocalSpec): LocalModel {
     let matrix = store.data;
     let at = pack.offset;
     if (pack.terms.length > 0) {
-      packed.set(store.data.subarray(at, at + large));
+      for (let i = 0; i < large; i++) packed[i] = store.data[at + i];
       for (const term of pack.terms) addMultiple(large, step[term.direction], store.data, term.offset, packed, 0);
       matrix = packed;
       at = 0;
