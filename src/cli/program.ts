@@ -1,24 +1,22 @@
 // program.ts: which commands and which global options are there?
-import { readFileSync } from "node:fs";
 import { Command } from "commander";
+import { productVersion } from "../base/version.js";
+import { register as inspect } from "./commands/inspect.js";
+import { register as sample } from "./commands/sample.js";
+import { register as sweep } from "./commands/sweep.js";
 import type { Context } from "./context.js";
 
 /** A file of commands/ exports one of these. */
-export type Register = (program: Command, context: Context) => void;
+type Register = (program: Command, context: Context) => void;
 
 /** In the order in which help shows them. */
-const commands: readonly Register[] = [];
-
-function packageVersion(): string {
-  const text = readFileSync(new URL("../../package.json", import.meta.url), "utf8");
-  return (JSON.parse(text) as { version: string }).version;
-}
+const commands: readonly Register[] = [inspect, sweep, sample];
 
 /** The whole command line. Commander neither prints errors nor exits: it throws, and outcome.ts has the word. */
 export function createProgram(context: Context): Command {
   const program = new Command("tidegauge")
     .description("Reads off a band grid how the Hall responses of a material run with the level, and how sure that is.")
-    .version(packageVersion(), "--version", "print the version")
+    .version(productVersion, "--version", "print the version")
     .option("--json", "one JSON document on stdout instead of text")
     .option("--out <DIR>", "write files into this directory")
     .option("--quiet", "no progress and no notes on stderr")

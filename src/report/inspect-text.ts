@@ -19,7 +19,7 @@ function gridText(grid: InspectedGrid, width: number): string {
   const more = grid.faults_total - grid.faults.length;
   if (more > 0) faults.push(`  and ${grouped(more)} more faults`);
   const warnings = grid.warnings.map((warning) => sentence("note", warning, width));
-  return [...parts, ...faults, ...warnings].join("\n");
+  return [...parts, ...faults, ...warnings].join("\n").trimEnd();
 }
 
 function verdict({ sound, faults_total: total, contents }: InspectedGrid): string {
@@ -93,7 +93,7 @@ function levelWords(level: InspectedLevel): string {
         ? "at the edge of the bands"
         : `in a gap of ${plain(gap, 4)} eV (on this mesh)`;
   const stated = electrons === null ? "" : `, stated are ${plain(electrons)}`;
-  return `${plain(level.reference_eV, 8)} eV (${level.origin}), ${where}; ${plain(level.electrons_counted, 6)} electrons per cell below it${stated}`;
+  return `${plain(level.reference_eV, 7)} eV (${level.origin}), ${where}; ${plain(level.electrons_counted, 6)} electrons per cell below it${stated}`;
 }
 
 const rangeWords = (bands: readonly number[]): string =>
