@@ -5,7 +5,7 @@ import { pauli, scaled, zeroMatrix } from "./matrix.js";
 import type { SampleModel } from "./model.js";
 import { declareSample, real, type ValuesOf, withDefaults } from "./parameter.js";
 
-export const diracParameters = {
+const diracParameters = {
   mass: real(0.3, "eV", "D, half the gap"),
   box: real(3, "1/angstrom", "K, half the width of the box in k; its tail is known in closed form", {
     min: 0,

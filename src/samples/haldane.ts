@@ -1,11 +1,11 @@
 // haldane.ts: Haldane's model of a quantum Hall effect without Landau levels.
 import { honeycombVectorsA, neighbourVectorsA, reversed, secondVectorsA } from "./honeycomb.js";
-import { type Hop, fourierHamiltonian } from "./hops.js";
+import { fourierHamiltonian, type Hop } from "./hops.js";
 import { identity, matrixOf, pauli, scaled, sumOf } from "./matrix.js";
 import type { SampleModel } from "./model.js";
 import { declareSample, real, type ValuesOf, withDefaults } from "./parameter.js";
 
-export const haldaneParameters = {
+const haldaneParameters = {
   t1: real(1, "eV", "hopping to neighbours"),
   t2: real(0.1, "eV", "hopping to second neighbours"),
   phi: real(Math.PI / 2, "radian", "phase of the second-neighbour hopping"),

@@ -1,7 +1,7 @@
 // hops.ts: H(k) of a tight-binding crystal as a Fourier sum over hops, with exact first and second derivatives.
 import type { Triple } from "../grid/grid.js";
-import type { ComplexMatrix, HamiltonianAtK } from "./model.js";
 import { zeroMatrix } from "./matrix.js";
+import type { ComplexMatrix, HamiltonianAtK } from "./model.js";
 
 /** One hop: `amplitude` e^{i k . vectorA} plus its Hermitian adjoint. */
 export interface Hop {

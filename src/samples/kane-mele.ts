@@ -1,11 +1,11 @@
 // kane-mele.ts: the quantum spin Hall model of Kane and Mele.
 import { honeycombVectorsA, neighbourVectorsA, reversed, secondVectorsA } from "./honeycomb.js";
-import { type Hop, fourierHamiltonian } from "./hops.js";
+import { fourierHamiltonian, type Hop } from "./hops.js";
 import { identity, kroneckerOf, matrixOf, pauli, scaled, sumOf } from "./matrix.js";
 import type { SampleModel } from "./model.js";
 import { declareSample, real, type ValuesOf, withDefaults } from "./parameter.js";
 
-export const kaneMeleParameters = {
+const kaneMeleParameters = {
   t: real(1, "eV", "hopping to neighbours"),
   l: real(0.06, "eV", "intrinsic spin-orbit hopping to second neighbours"),
   r: real(0.05, "eV", "Rashba spin-orbit hopping to neighbours"),

@@ -6,7 +6,7 @@ import { angularMomentum, identity, productOf, scaled, sumOf, zeroMatrix } from 
 import type { ComplexMatrix, SampleModel } from "./model.js";
 import { declareSample, real, type ValuesOf, withDefaults } from "./parameter.js";
 
-export const luttingerParameters = {
+const luttingerParameters = {
   g1: real(6.98, "", "Luttinger parameter gamma1 (GaAs: 6.98)"),
   g2: real(2.582, "", "spherical Luttinger parameter gamma2 (GaAs: 2.582)"),
   exx: real(0, "", "strain along x"),

@@ -42,6 +42,26 @@ export const real = (value: number, unit: string, meaning: string, range: Number
   schema: numberSchema(range),
 });
 
+/** A real parameter that may be left out; then the model decides by itself, as `meaning` must say. */
+export const optionalReal = (
+  unit: string,
+  meaning: string,
+  range: NumberRange = {},
+): Parameter<number | undefined> => ({
+  default: undefined,
+  unit,
+  meaning,
+  schema: numberSchema(range),
+});
+
+/** A free text. */
+export const text = (value: string, meaning: string): Parameter<string> => ({
+  default: value,
+  unit: "",
+  meaning,
+  schema: z.string().min(1, { error: "a text that is not empty" }),
+});
+
 /** A whole-number parameter between `min` and `max`. */
 export const whole = (value: number, meaning: string, min: number, max: number): Parameter<number> => ({
   default: value,
@@ -70,10 +90,16 @@ export const choice = <const W extends string>(
   schema: z.string().pipe(z.enum(words, { error: `one of ${words.join(", ")}` })) as z.ZodType<W, string>,
 });
 
+/** A checked value. */
+export type ParameterValue = number | string | undefined;
+
 /** The values of a set of parameters. */
 export type ValuesOf<P extends ParameterSet> = { readonly [K in keyof P]: P[K] extends Parameter<infer T> ? T : never };
 
-export type ParameterSet = Readonly<Record<string, Parameter<number> | Parameter<string>>>;
+/** Parameters by name. */
+export type ParameterSet = Readonly<
+  Record<string, Parameter<number> | Parameter<number | undefined> | Parameter<string>>
+>;
 
 /** A mesh on which the sample is well sampled by default. */
 export interface SampleMesh {
@@ -90,7 +116,7 @@ export interface Sample {
   /** A mesh that reaches the digits of the publication at modest size. */
   readonly mesh: SampleMesh;
   /** The model of already checked values (keys of `parameters`). */
-  build(values: Readonly<Record<string, number | string>>): SampleModel;
+  build(values: Readonly<Record<string, ParameterValue>>): SampleModel;
 }
 
 /** Declares a sample with typed parameters; the catalogue sees the untyped face. */

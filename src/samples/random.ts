@@ -1,12 +1,12 @@
 // random.ts: seeded random tight-binding crystals of low symmetry, for calibration: no two alike, each exactly known.
 import { randomStream } from "../base/random.js";
 import type { Triple } from "../grid/grid.js";
-import { type Hop, fourierHamiltonian } from "./hops.js";
+import { fourierHamiltonian, type Hop } from "./hops.js";
 import { adjointOf, identity, kroneckerOf, pauli, scaled, sumOf, zeroMatrix } from "./matrix.js";
 import type { ComplexMatrix, SampleModel } from "./model.js";
 import { choice, declareSample, even, real, type ValuesOf, whole, withDefaults } from "./parameter.js";
 
-export const randomParameters = {
+const randomParameters = {
   seed: whole(1, "which crystal", 0, 4294967295),
   bands: even(whole(6, "number of bands, even: orbitals times two spins", 2, 64)),
   periodic: whole(3, "3 for a crystal, 2 for a layer", 2, 3),

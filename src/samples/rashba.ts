@@ -5,7 +5,7 @@ import { identity, pauli, productOf, scaled, sumOf, zeroMatrix } from "./matrix.
 import type { ComplexMatrix, SampleModel } from "./model.js";
 import { declareSample, real, type ValuesOf, withDefaults } from "./parameter.js";
 
-export const rashbaParameters = {
+const rashbaParameters = {
   alpha: real(1, "eV angstrom", "Rashba coupling"),
   mass: real(1, "1 / (eV angstrom^2)", "m / hbar^2 in H = k^2 / 2m", { min: 0, open: true }),
   box: real(6, "1/angstrom", "K, half the width of the box in k; must hold the occupied states", {
@@ -13,6 +13,9 @@ export const rashbaParameters = {
     open: true,
   }),
 };
+
+/** Below this half splitting the touching point's limit is taken: reciprocals must stay finite. */
+const smallestSplittingEv = 1e-290;
 
 /**
  * The orbital moment about z at k, units of hbar, in the fixed basis: the interband part of (r x k)_z, which is
@@ -22,12 +25,12 @@ export const rashbaParameters = {
  * between bands; at k = 0, where the bands touch, that is also its limit.
  */
 function orbitalMoment(h: ComplexMatrix, dhx: ComplexMatrix, dhy: ComplexMatrix, k: Triple): ComplexMatrix {
-  const halfDifference = (h[0] - h[6]) / 2;
-  const splittingSquared = 4 * (h[2] * h[2] + h[3] * h[3] + halfDifference * halfDifference);
-  if (splittingSquared === 0) return scaled(pauli[2], -0.5);
-  const turning = sumOf(scaled(dhx, k[1]), scaled(dhy, -k[0]));
-  const commutator = sumOf(productOf(h, turning), scaled(productOf(turning, h), -1));
-  return scaled(commutator, [0, -1 / splittingSquared]);
+  const halfSplitting = Math.hypot((h[0] - h[6]) / 2, h[2], h[3]);
+  if (halfSplitting < smallestSplittingEv) return scaled(pauli[2], -0.5);
+  const direction = scaled(h, 1 / halfSplitting);
+  const turning = sumOf(scaled(dhx, k[1] / halfSplitting), scaled(dhy, -k[0] / halfSplitting));
+  const commutator = sumOf(productOf(direction, turning), scaled(productOf(turning, direction), -1));
+  return scaled(commutator, [0, -0.25]);
 }
 
 /**

@@ -1,11 +1,11 @@
 // sp-square.ts: a square layer of s, px and py orbitals: an orbital Hall effect without spin-orbit coupling.
 import type { Triple } from "../grid/grid.js";
-import { type Hop, fourierHamiltonian } from "./hops.js";
+import { fourierHamiltonian, type Hop } from "./hops.js";
 import { identity, kroneckerOf, matrixOf, pauli, scaled, zeroMatrix } from "./matrix.js";
 import type { ComplexMatrix, SampleModel } from "./model.js";
 import { choice, declareSample, real, type ValuesOf, withDefaults } from "./parameter.js";
 
-export const spSquareParameters = {
+const spSquareParameters = {
   Es: real(3.2, "eV", "level of s"),
   Ep: real(-0.5, "eV", "level of p"),
   ts: real(0.5, "eV", "s-s hopping"),
