@@ -3,7 +3,8 @@
 gold.py PARAMETERS levels                                     zone-centre levels in rydberg
 gold.py PARAMETERS sample --k F1 F2 F3 [F1 F2 F3 ...]         gauge-invariant quantities at fractional k points, JSON
 gold.py PARAMETERS mesh --divisions N [--temperature T...] [--electrons X | --level EV]
-                                                              plain sums of spin:hall and orbital:hall on an N^3 mesh
+                                                              plain sums of spin:hall and orbital:hall on an N^3 mesh;
+                                                              --reduce: one point of each cubic star, with its weight
 gold.py PARAMETERS write DIRECTORY --divisions N [--files M]  a bandgrid/1 directory (18 bands, spin and orbital)
 
 PARAMETERS is a JSON file with lattice.a_angstrom, electrons, xi_d_eV, lambda2, cutoff, width, onsite, H and S, in
@@ -13,10 +14,12 @@ rydberg and bohr. Method: Mehl and Papaconstantopoulos, Phys. Rev. B 54, 4519 (1
   rho = sum_neighbours exp(-lambda2 R) F(R);  on-site a + b rho^(2/3) + c rho^(4/3) + d rho^2
   two-centre (a + b R + c R^2) exp(-d2 R) F(R)
 The angular parts are built from tensors, not from the table: s = 1, p = unit vectors, d = symmetric traceless
-matrices D with D:D = 1 (the orbital r.D.r). Bloch sums exp(i k.R); Loewdin orthogonalisation at each k; xi L.S on d after it; spin
-sigma/2; orbital moment L on p and d in the orthogonalised basis. Basis: 9 orbitals x (up, down), up first.
+matrices D with D:D = 1 (the orbital r.D.r). Bloch sums exp(i k.R); Loewdin orthogonalisation at each k; xi L.S on d
+after it; spin sigma/2; orbital moment L on p and d in the orthogonalised basis. Basis: (up, down) x 9 orbitals.
+--side, --xi and --electrons replace the file's lattice constant (angstrom), coupling (eV) and filling.
 """
 import argparse
+import itertools
 import json
 import os
 import sys
@@ -147,13 +150,26 @@ class Crystal:
         """Rows b1, b2, b3 in 1/angstrom."""
         return 2 * np.pi * np.linalg.inv(FCC * self.a).T
 
-    def mesh(self, n, offset=(0, 0, 0)):
-        """Arrays of a full n^3 mesh, i3 fastest."""
-        index = np.stack(np.meshgrid(*[np.arange(n)] * 3, indexing="ij"), -1).reshape(-1, 3)
+    def mesh(self, n, offset=(0, 0, 0), index=None):
+        """Arrays of a full n^3 mesh, i3 fastest; or of the given mesh indices [point, 3]."""
+        index = np.indices((n, n, n)).reshape(3, -1).T if index is None else index
         rows = [self.at((i + offset) / n @ self.reciprocal()) for i in index]
         stack = lambda pick: np.array([pick(row) for row in rows])
         moments = {name: stack(lambda row: row[2][name]) for name in self.moments}
         return stack(lambda row: row[0]), stack(lambda row: row[1]), moments
+
+
+def cubic_stars(n):
+    """Mesh indices [point, 3] of one point per cubic star of the unshifted n^3 mesh, and weights of mean 1."""
+    index = np.indices((n, n, n)).reshape(3, -1).T
+    cartesian = index @ np.rint(np.linalg.inv(FCC).T).astype(int)  # in 2 pi / (n a)
+    least = np.full(n**3, n**3)
+    for order in itertools.permutations(range(3)):
+        for signs in itertools.product((1, -1), repeat=3):
+            turned = np.rint((cartesian[:, order] * signs) @ FCC.T).astype(int) % n
+            least = np.minimum(least, (turned[:, 0] * n + turned[:, 1]) * n + turned[:, 2])
+    kept, count = np.unique(least, return_counts=True)
+    return index[kept], count / count.mean()
 
 
 def groups(energy, tolerance):
@@ -186,32 +202,34 @@ def sample(crystal, fractions, degenerate):
     return document
 
 
-def chemical_potential(energy, electrons, temperature):
-    """mu at which mean_k sum_n f = electrons, by bisection (T > 0)."""
+def chemical_potential(energy, electrons, temperature, weight=1.0):
+    """mu at which mean_k weight sum_n f = electrons, by bisection (T > 0)."""
     low, high = energy.min() - 5, energy.max() + 5
     for _ in range(200):
         middle = (low + high) / 2
-        filled = oracle.occupation(energy, middle, temperature).sum() / len(energy)
+        filled = np.mean(oracle.occupation(energy, middle, temperature).sum(axis=1) * weight)
         low, high = (middle, high) if filled < electrons else (low, middle)
     return (low + high) / 2
 
 
 def mesh_values(crystal, options):
     """Plain sums at the level of `electrons` per temperature, or at a fixed --level."""
-    energy, velocity, moments = crystal.mesh(options.divisions, np.full(3, options.offset))
+    index, weight = cubic_stars(options.divisions) if options.reduce else (None, 1.0)
+    energy, velocity, moments = crystal.mesh(options.divisions, np.full(3, options.offset), index)
     volume = crystal.a**3 / 4
-    result = {"divisions": options.divisions, "offset": options.offset, "rows": []}
-    names = ["spin:hall", "orbital:hall", "spin:xy:z", "orbital:xy:z"]
+    result = {"divisions": options.divisions, "offset": options.offset, "points": len(energy), "rows": []}
+    # :hall is a scalar of the cubic group, so one point stands for its star; a single component is not.
+    names = ["spin:hall", "orbital:hall"] + ([] if options.reduce else ["spin:xy:z", "orbital:xy:z"])
     omega = {r: oracle.response_curvature(r, energy, velocity, moments, options.degenerate) for r in names}
     for temperature in options.temperature:
         mu = options.level
         if mu is None:
-            mu = chemical_potential(energy, options.electrons or crystal.electrons, options.filling or temperature)
+            mu = chemical_potential(energy, crystal.electrons, options.filling or temperature, weight)
         filled = oracle.occupation(energy, mu, temperature)
         row = {"temperature_K": temperature, "mu_eV": mu, "mu_Ry": mu / RYDBERG}
-        row["electrons"] = filled.sum() / len(energy)
+        row["electrons"] = np.mean(filled.sum(axis=1) * weight)
         for r in names:
-            row[r] = oracle.prefactor(r, False, volume)[0] * np.sum(filled * omega[r]) / len(energy)
+            row[r] = oracle.prefactor(r, False, volume)[0] * np.mean((filled * omega[r]).sum(axis=1) * weight)
         result["rows"].append(row)
     return result
 
@@ -259,13 +277,25 @@ def main():
     parser.add_argument("--offset", type=float, default=0.0)
     parser.add_argument("--temperature", nargs="+", type=float, default=[300.0])
     parser.add_argument("--electrons", type=float)
+    parser.add_argument("--side", type=float, help="angstrom")
+    parser.add_argument("--xi", type=float, help="eV")
     parser.add_argument("--filling", type=float, help="K at which the level is found (default: the row's temperature)")
     parser.add_argument("--level", type=float, help="absolute level in eV instead of a filling")
     parser.add_argument("--degenerate", type=float, default=1e-6)
+    parser.add_argument("--reduce", action="store_true", help="use the cubic group (mesh, offset 0)")
     parser.add_argument("--files", type=int, default=1)
     options = parser.parse_args()
+    if options.reduce and options.offset != 0:
+        parser.error("--reduce needs --offset 0: a shifted fcc mesh has not the whole cubic group")
     with open(options.parameters) as file:
-        crystal = Crystal(json.load(file))
+        parameters = json.load(file)
+    if options.side is not None:
+        parameters["lattice"]["a_angstrom"] = options.side
+    if options.xi is not None:
+        parameters["xi_d_eV"] = options.xi
+    if options.electrons is not None:
+        parameters["electrons"] = options.electrons
+    crystal = Crystal(parameters)
     if options.task == "levels":
         energy, _, _ = crystal.at(np.zeros(3))
         result = {"zone_centre_Ry": (energy[::2] / RYDBERG).tolist()}

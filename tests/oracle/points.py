@@ -139,7 +139,7 @@ def prefactor(name, layer, measure):
 
 
 def curvature(energy, current, field, degenerate):
-    """Omega[k, n] of a current operator [k, bra, ket] against the field's velocity; pairs within `degenerate` skipped."""
+    """Omega[k, n] of a current operator [k, bra, ket] against the field's velocity; close pairs are skipped."""
     gap = energy[:, :, None] - energy[:, None, :]
     skip = (np.abs(gap) < degenerate) | (gap == 0)
     inverse = np.where(skip, 0.0, 1.0 / np.where(skip, 1.0, gap) ** 2)
