@@ -12,7 +12,7 @@ process.on("uncaughtException", endAtOnce);
 process.on("unhandledRejection", endAtOnce);
 
 try {
-  const program = createProgram(context);
+  const program = await createProgram(context, process.argv.slice(2));
   program.hook("preAction", () => {
     quiet = program.opts().quiet === true;
   });

@@ -1,19 +1,23 @@
 // program.ts: which commands and which global options are there?
 import { Command } from "commander";
 import { productVersion } from "../base/version.js";
-import { register as inspect } from "./commands/inspect.js";
-import { register as sample } from "./commands/sample.js";
-import { register as sweep } from "./commands/sweep.js";
 import type { Context } from "./context.js";
 
-/** A file of commands/ exports one of these. */
+/** A file of commands/ exports one of these as `register`. */
 type Register = (program: Command, context: Context) => void;
 
-/** In the order in which help shows them. */
-const commands: readonly Register[] = [inspect, sweep, sample];
+/** In the order in which help shows them. Loaded when asked for: charts and models take longer to load than to use. */
+const commands: Readonly<Record<string, () => Promise<{ readonly register: Register }>>> = {
+  inspect: () => import("./commands/inspect.js"),
+  sweep: () => import("./commands/sweep.js"),
+  sample: () => import("./commands/sample.js"),
+};
 
-/** The whole command line. Commander neither prints errors nor exits: it throws, and outcome.ts has the word. */
-export function createProgram(context: Context): Command {
+/**
+ * The command line for these words: with the one command that the first word names, or else with all of them.
+ * Commander neither prints errors nor exits: it throws, and outcome.ts has the word.
+ */
+export async function createProgram(context: Context, words: readonly string[]): Promise<Command> {
   const program = new Command("tidegauge")
     .description("Reads off a band grid how the Hall responses of a material run with the level, and how sure that is.")
     .version(productVersion, "--version", "print the version")
@@ -27,7 +31,8 @@ export function createProgram(context: Context): Command {
     .configureOutput({ outputError: () => {} })
     .exitOverride()
     .addHelpText("after", exitStatusHelp);
-  for (const register of commands) register(program, context);
+  const named = Object.hasOwn(commands, words[0] ?? "") ? [words[0]] : Object.keys(commands);
+  for (const name of named) (await commands[name]()).register(program, context);
   return program;
 }
 
