@@ -1,5 +1,5 @@
 // explain.ts: turns what zod found wrong in a manifest into one sentence with path, finding, and what is allowed.
-import { closest, distance } from "fastest-levenshtein";
+import { distance } from "fastest-levenshtein";
 import { z } from "zod";
 import { dataFault, type Fault } from "../base/errors.js";
 import { quoted } from "./jsontext.js";
@@ -86,7 +86,7 @@ function sizeOf(origin: string): string {
 function unknownName(schema: z.ZodType, path: Path, key: string): [string, string] {
   const known = knownNames(schema, path);
   const name = pathName([...path, key]);
-  const near = known.length > 0 ? closest(key, known) : undefined;
+  const near = nearest(key, known);
   const close = near !== undefined && distance(key.toLowerCase(), near.toLowerCase()) <= Math.max(2, key.length / 2);
   return [
     `${name} is not a field of the format; known here are ${known.join(", ")}`,
@@ -97,7 +97,17 @@ function unknownName(schema: z.ZodType, path: Path, key: string): [string, strin
 function suggestion(found: unknown, values: readonly unknown[]): string {
   const texts = values.filter((value) => typeof value === "string");
   if (typeof found !== "string" || texts.length < 2) return "Write the value that the format asks for.";
-  return `Did you mean ${quoted(closest(found, texts))}?`;
+  return `Did you mean ${quoted(nearest(found, texts))}?`;
+}
+
+/** The name with the least part of its letters changed, case aside: a short name is not nearer for being short. */
+function nearest(text: string, names: readonly string[]): string | undefined {
+  const lower = text.toLowerCase();
+  const unlike = (name: string): number => distance(lower, name.toLowerCase()) / Math.max(lower.length, name.length);
+  return names.reduce<string | undefined>(
+    (best, name) => (best === undefined || unlike(name) < unlike(best) ? name : best),
+    undefined,
+  );
 }
 
 /** Names of the fields that the schema has at `path`. */

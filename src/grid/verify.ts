@@ -81,7 +81,7 @@ function describeEnergies(facts: GridFacts, plan: ArrayPlan, block: Block, point
   }
   for (let band = 1; band < bands; band++) {
     if (row[band] >= row[band - 1] - ascendingToleranceEv) continue;
-    const values = `${row[band - 1]} eV is followed by ${row[band]} eV`;
+    const values = `${shown(row[band - 1])} eV is followed by ${shown(row[band])} eV`;
     const bandsMet = [band - 1, band];
     report(
       finding(facts, plan, first + point, { problem: "not ascending", component: undefined, bands: bandsMet }, values),
@@ -158,3 +158,8 @@ const cures: Record<Finding["problem"], string> = {
   "not ascending": "Sort the bands at every k point, the matrices with them; check axes and type in the manifest.",
   "not Hermitian": "Check axes, type and byteOrder in the manifest, and that bra and ket are in one basis.",
 };
+
+/** Twelve digits: enough to see a fall beyond the tolerance, without the last bits of a decimal. */
+function shown(value: number): number {
+  return Number(value.toPrecision(12));
+}
