@@ -11,6 +11,7 @@ needs=(
 present() { bash -c "$1" >/dev/null 2>&1; }
 
 missing=()
+left_out=0
 for need in "${needs[@]}"; do
   package=${need%%|*}
   rest=${need#*|}
@@ -31,6 +32,9 @@ fi
 for need in "${needs[@]}"; do
   package=${need%%|*}
   rest=${need#*|}
-  present "${rest%|*}" || echo "setup: left out: ${rest##*|}: $package is missing ($why)"
+  present "${rest%|*}" && continue
+  echo "setup: left out: ${rest##*|}: $package is missing ($why)"
+  left_out=1
 done
-exit 0
+# With CI=true every suite must run: there a missing tool is a failure, not a note.
+[ "${CI:-}" != true ] || [ "$left_out" = 0 ]

@@ -6,7 +6,6 @@ cd "$(dirname "${BASH_SOURCE[0]}")/../.." || exit 1
 rm -rf .cache/tests
 mkdir -p .cache/tests
 [ -d node_modules ] || npm ci --no-progress || exit 1
-bash tests/tooling/setup.sh
 
 failed=0
 step() {
@@ -14,6 +13,7 @@ step() {
   shift
   "$@" || { failed=1; printf '%s\n' "$*" >>.cache/tests/failed-steps; }
 }
+step "set-up" bash tests/tooling/setup.sh
 step "build" npm run --silent build
 step "check" npm run --silent check
 step "test" npx vitest run --config tests/tooling/vitest.config.ts \
