@@ -6,7 +6,9 @@
 
 import { hbar2OverMeEvA2 } from "../base/constants.js";
 import type { HessianKind } from "../grid/grid.js";
+import { hessianIndex } from "./hamiltonian.js";
 import type { MatrixRef, PointRef, Product } from "./kernel.js";
+import { pairCount } from "./pairs.js";
 import { copyPadded, multiplyInto } from "./product.js";
 
 /** The velocity of a direction (moment -1), or the current (O v + v O) / 2 of a moment flowing that way. */
@@ -22,6 +24,8 @@ export interface Pack {
   readonly shape: "full" | "lower";
   /** Place of the base matrix in the store's data. */
   readonly offset: number;
+  /** Place of the first operator's pairs where the pairs of all packs are kept, two operators a pack. */
+  readonly pairOffset: number;
   readonly terms: readonly { readonly direction: number; readonly offset: number }[];
 }
 
@@ -41,9 +45,6 @@ export interface OperatorStore {
   readonly data: Float64Array;
   load(point: PointRef): void;
 }
-
-/** Place of d^2H/dk_a dk_b among xx, yy, zz, yz, zx, xy. */
-export const hessianIndex = (a: number, b: number): number => (a === b ? a : 6 - a - b);
 
 /** Operators whose every element is wanted, velocities first, each once; and velocities wanted for slopes only. */
 function chooseOperators({ products, directions }: OperatorSpec): { full: Operator[]; slopeOnly: Operator[] } {
@@ -74,7 +75,8 @@ function planPacks(spec: OperatorSpec, matrixLength: number): { packs: Pack[]; l
   const add = (operators: readonly Operator[], shape: Pack["shape"]) => {
     const along = [...new Set(operators.flatMap((operator) => changesAlong(operator, spec)))].sort();
     const terms = along.map((direction) => ({ direction, offset: place() }));
-    packs.push({ operators, shape, offset: place(), terms });
+    const pairOffset = packs.length * 4 * pairCount(spec.bands);
+    packs.push({ operators, shape, offset: place(), pairOffset, terms });
   };
   for (let i = 0; i < full.length; i += 2) add(full.slice(i, i + 2), "full");
   for (const operator of slopeOnly) add([operator], "lower");
