@@ -58,6 +58,6 @@ export const kaneMeleSample = declareSample(
   "kane-mele",
   "Kane and Mele's honeycomb layer: quantum spin Hall effect",
   kaneMeleParameters,
-  { divisions: [120, 120, 1], offset: [0.5, 0.5, 0] },
+  { divisions: [150, 150, 1], offset: [0.5, 0.5, 0] },
   kaneMeleModel,
 );

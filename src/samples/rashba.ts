@@ -8,7 +8,7 @@ import { declareSample, real, type ValuesOf, withDefaults } from "./parameter.js
 const rashbaParameters = {
   alpha: real(1, "eV angstrom", "Rashba coupling"),
   mass: real(1, "1 / (eV angstrom^2)", "m / hbar^2 in H = k^2 / 2m", { min: 0, open: true }),
-  box: real(6, "1/angstrom", "K, half the width of the box in k; must hold the occupied states", {
+  box: real(5, "1/angstrom", "K, half the width of the box in k; must hold the occupied states", {
     min: 0,
     open: true,
   }),
@@ -76,6 +76,6 @@ export const rashbaSample = declareSample(
   "rashba",
   "Rashba electron gas in two dimensions (continuum, cut to a box): universal spin Hall conductivity and its orbital counterpart",
   rashbaParameters,
-  { divisions: [120, 120, 1], offset: [0.5, 0.5, 0] },
+  { divisions: [200, 200, 1], offset: [0.5, 0.5, 0] },
   rashbaModel,
 );
