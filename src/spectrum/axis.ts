@@ -6,7 +6,7 @@ import { usageFault } from "../base/errors.js";
 export const fermiReach = 38;
 /** Nodes per kT, which makes 12-point anterpolation of a Fermi factor good to 1e-12. */
 const nodesPerThermalEnergy = 8;
-/** Nodes per level step at zero temperature: the stated energy resolution of `cells` and `refine`. */
+/** Nodes per level step where zero temperature is asked: the stated energy resolution of `cells` and `refine`. */
 const nodesPerLevel = 4;
 const mostNodes = 200_000;
 
@@ -48,7 +48,8 @@ export function planAxis(window: Window, temperaturesK: readonly number[]): Leve
   const levelStep = single ? 0.01 : (toEv - fromEv) / (points - 1);
   const warm = temperaturesK.filter((t) => t > 0).map((t) => t * boltzmannEvPerK);
   const lowest = warm.length > 0 ? Math.min(...warm) : Number.POSITIVE_INFINITY;
-  const finest = Math.min(levelStep / nodesPerLevel, lowest / nodesPerThermalEnergy);
+  const cold = warm.length < temperaturesK.length;
+  const finest = Math.min(levelStep / (cold ? nodesPerLevel : 1), lowest / nodesPerThermalEnergy);
   const perLevel = Math.ceil(levelStep / finest - 1e-9);
   const stepEv = levelStep / perLevel;
   const reach = warm.length > 0 ? Math.max(...warm) * fermiReach : 0;
@@ -56,8 +57,8 @@ export function planAxis(window: Window, temperaturesK: readonly number[]): Leve
   const count = (points - 1) * perLevel + 1 + 2 * margin;
   if (count > mostNodes)
     throw usageFault(
-      `a window of ${(toEv - fromEv).toFixed(3)} eV at ${Math.min(...temperaturesK.filter((t) => t > 0))} K needs ${count} energy nodes, more than ${mostNodes}`,
-      "Narrow --from/--to, or raise the lowest temperature.",
+      `${points} levels over ${(toEv - fromEv).toFixed(3)} eV at ${Math.min(...temperaturesK)} to ${Math.max(...temperaturesK)} K need ${count} energy nodes, more than ${mostNodes}`,
+      "Narrow --from/--to, ask for fewer levels, or ask for the lowest and the highest temperatures in sweeps of their own.",
     );
   return {
     levelsEv: Float64Array.from({ length: points }, (_, i) => fromEv + i * levelStep),
@@ -75,5 +76,15 @@ const mostErrorNodes = 1200;
 export function coarseNodes(axis: LevelAxis): NodeAxis {
   const { startEv, stepEv, count } = axis.nodes;
   const multiple = Math.max(1, Math.ceil(count / mostErrorNodes));
+  return { startEv, stepEv: stepEv * multiple, count: Math.ceil(count / multiple) + 1 };
+}
+
+/** Longest axis on which boxes and their halves are compared. */
+const mostIndicatorNodes = 128;
+
+/** A still coarser copy, for judging single cells: features below it average out between cells. */
+export function indicatorNodes(axis: LevelAxis): NodeAxis {
+  const { startEv, stepEv, count } = axis.nodes;
+  const multiple = Math.max(1, Math.ceil(count / mostIndicatorNodes));
   return { startEv, stepEv: stepEv * multiple, count: Math.ceil(count / multiple) + 1 };
 }

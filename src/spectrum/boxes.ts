@@ -9,8 +9,8 @@ import type { NodeAxis } from "./axis.js";
 
 /** A spread covers at most this many nodes of the copy it is kept on, and more than half of it unless it is the finest. */
 const mostSpan = 24;
-/** A box narrower than this part of a step is left out. */
-const narrowest = 1e-3;
+/** A box narrower than a step has a single lag and changes nothing. */
+const narrowest = 1;
 
 /** Weight per column. `base` lies below the axis; `copies[k]` has steps of 2^k: [node][column]. */
 export interface BoxStore {
@@ -83,9 +83,13 @@ export function createBoxShaper(axis: NodeAxis): BoxShaper {
       shape.copy++;
     }
     if (!(total <= mostSpan * step))
-      throw dataFault(`a band at ${energyEv} eV spreads over ${total} eV within one cell`, "Check the unit of the velocity.");
+      throw dataFault(
+        `a band at ${energyEv} eV spreads over ${total} eV within one cell`,
+        "Check the unit of the velocity.",
+      );
     let position = (energyEv - axis.startEv) / step;
-    for (let j = 0; j < widthsEv.length; j++) if (widthsEv[j] > narrowest * step) position -= meanLag(widthsEv[j] / step);
+    for (let j = 0; j < widthsEv.length; j++)
+      if (widthsEv[j] > narrowest * step) position -= meanLag(widthsEv[j] / step);
     shape.first = Math.floor(position);
     shape.entries = Math.ceil(total / step) + 3;
     const { weight } = shape;

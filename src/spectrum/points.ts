@@ -71,8 +71,7 @@ export function createPointDeposit(store: PointStore): PointDeposit {
     if (smooth) {
       lagrange(position - node, weights);
       let at = (node - stencil / 2 + 1) * columns;
-      for (let j = 0; j < stencil; j++)
-        for (let c = 0; c < columns; c++) nodes[at++] += weights[j] * values[c];
+      for (let j = 0; j < stencil; j++) for (let c = 0; c < columns; c++) nodes[at++] += weights[j] * values[c];
     }
     let level = Math.max(0, Math.ceil((energyEv - levelsEv[0]) / levelStep - 1e-6));
     if (level > 0 && energyEv <= levelsEv[Math.min(level, levelsEv.length) - 1]) level--;
