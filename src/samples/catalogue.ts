@@ -1,6 +1,7 @@
 // catalogue.ts: which samples there are, and the model of a name with parameters as a person types them.
 import { closest } from "fastest-levenshtein";
 import { usageFault } from "../base/errors.js";
+import { demoSample } from "./demo.js";
 import { diracSample } from "./dirac.js";
 import { haldaneSample } from "./haldane.js";
 import { kaneMeleSample } from "./kane-mele.js";
@@ -21,6 +22,7 @@ export const sampleCatalogue: readonly Sample[] = [
   luttingerSample,
   spSquareSample,
   metalSample,
+  demoSample,
   randomSample,
 ];
 

@@ -24,6 +24,7 @@ describe("the catalogue", () => {
         "luttinger",
         "sp-square",
         "metal",
+        "demo",
         "random",
       ]
     `);
