@@ -1,9 +1,10 @@
 // oracle.test.ts: does the NumPy oracle give the recipes' known responses? Ties the oracle to closed forms.
 import { execFileSync } from "node:child_process";
 import { join } from "node:path";
-import { describe, expect, it } from "vitest";
+import { expect, it } from "vitest";
+import { requireOrSkip } from "../tooling/python.js";
 import { cellAreaA2, closedForm, meshDivisions } from "./dirac.js";
-import { mustRun, pythonWithNumpy, recipes, root, runRecipe } from "./recipes.js";
+import { numpy, recipes, root, runRecipe } from "./recipes.js";
 
 interface Answer {
   readonly electrons_per_cell: number[][];
@@ -12,7 +13,7 @@ interface Answer {
 
 const oracle = (grid: string, ...options: string[]): Answer =>
   JSON.parse(
-    execFileSync(pythonWithNumpy ?? "python3", [join(root, "tests/oracle/points.py"), grid, ...options], {
+    execFileSync(numpy.tool ?? "python3", [join(root, "tests/oracle/points.py"), grid, ...options], {
       encoding: "utf8",
     }),
   );
@@ -27,44 +28,28 @@ function lowerBand(pick: (k: number) => number): number {
 }
 
 for (const recipe of recipes) {
-  const skip = !(recipe.present && pythonWithNumpy !== undefined) && !mustRun;
-  describe.skipIf(skip)(
-    skip ? `points.py on ${recipe.file} (skipped: a tool is missing)` : `points.py on ${recipe.file}`,
-    () => {
-      it("gives -1 e^2/h in the gap, the closed form's spin response, and full bands above", () => {
-        const responses = ["charge:xy", "charge:yx", "spin:xy:z", "spin:hall"];
-        const answer = oracle(
-          runRecipe(recipe),
-          ...[
-            "--levels",
-            "0",
-            "9",
-            "2",
-            "--temperature",
-            "0",
-            "100",
-            "--degenerate",
-            "1e-6",
-            "--response",
-            ...responses,
-          ],
+  const tool = numpy.tool === undefined ? undefined : recipe.tool;
+  requireOrSkip(`${numpy.needs} and ${recipe.needs}`, tool, `points.py on ${recipe.file}`, () => {
+    it("gives -1 e^2/h in the gap, the closed form's spin response, and full bands above", () => {
+      const responses = ["charge:xy", "charge:yx", "spin:xy:z", "spin:hall"];
+      const answer = oracle(
+        runRecipe(recipe),
+        ...["--levels", "0", "9", "2", "--temperature", "0", "100", "--degenerate", "1e-6", "--response", ...responses],
+      );
+      expect(answer.electrons_per_cell[0]).toEqual([1, 2]);
+      const value = (response: number, temperature: number): number => answer.responses[response].value[temperature][0];
+      expect(answer.responses.map((response) => response.unit)).toEqual(["e^2/h", "e^2/h", "e/2pi", "e/2pi"]);
+      // The gap reaches from -0.6 to 1 eV: at 100 K the occupation is that of T = 0 to 1e-12.
+      for (const temperature of [0, 1]) {
+        expect(value(0, temperature)).toBeCloseTo(-lowerBand((k) => closedForm(k).chargeXyA2), 11);
+        expect(value(1, temperature)).toBeCloseTo(-value(0, temperature), 12);
+        expect(value(2, temperature)).toBeCloseTo(
+          lowerBand((k) => closedForm(k).spinXyA2[2]),
+          12,
         );
-        expect(answer.electrons_per_cell[0]).toEqual([1, 2]);
-        const value = (response: number, temperature: number): number =>
-          answer.responses[response].value[temperature][0];
-        expect(answer.responses.map((response) => response.unit)).toEqual(["e^2/h", "e^2/h", "e/2pi", "e/2pi"]);
-        // The gap reaches from -0.6 to 1 eV: at 100 K the occupation is that of T = 0 to 1e-12.
-        for (const temperature of [0, 1]) {
-          expect(value(0, temperature)).toBeCloseTo(-lowerBand((k) => closedForm(k).chargeXyA2), 11);
-          expect(value(1, temperature)).toBeCloseTo(-value(0, temperature), 12);
-          expect(value(2, temperature)).toBeCloseTo(
-            lowerBand((k) => closedForm(k).spinXyA2[2]),
-            12,
-          );
-        }
-        // Two bands, both full: every pair cancels.
-        for (const { value } of answer.responses) expect(Math.abs(value[0][1])).toBeLessThan(1e-13);
-      }, 60_000);
-    },
-  );
+      }
+      // Two bands, both full: every pair cancels.
+      for (const { value } of answer.responses) expect(Math.abs(value[0][1])).toBeLessThan(1e-13);
+    }, 60_000);
+  });
 }

@@ -1,10 +1,11 @@
 // write.test.ts: do the recipes of the format's page write grids that the reader reads as the closed form says?
-import { beforeAll, describe, expect, it } from "vitest";
+import { beforeAll, expect, it } from "vitest";
 import type { Block, MatrixBlock } from "../../src/grid/grid.js";
 import { openGrid } from "../../src/grid/open.js";
 import { openReader } from "../../src/grid/reader.js";
+import { requireOrSkip } from "../tooling/python.js";
 import { cellAreaA2, closedForm, meshDivisions } from "./dirac.js";
-import { mustRun, recipes, runRecipe } from "./recipes.js";
+import { plain, recipes, runRecipe, stream } from "./recipes.js";
 
 const points = meshDivisions * meshDivisions;
 
@@ -62,8 +63,7 @@ function worst(pick: (k: number) => readonly (readonly [number, number])[]): num
 }
 
 for (const recipe of recipes) {
-  const skip = !recipe.present && !mustRun;
-  describe.skipIf(skip)(skip ? `${recipe.file} (skipped: no ${recipe.tool} here)` : recipe.file, () => {
+  requireOrSkip(recipe.needs, recipe.tool, recipe.file, () => {
     let directory: string;
     let block: Block;
     beforeAll(() => {
@@ -132,10 +132,8 @@ for (const recipe of recipes) {
   });
 }
 
-const plain = recipes[0];
-const stream = recipes[2];
-const both = plain.present && stream.present;
-describe.skipIf(!both && !mustRun)("plain Python and Fortran", () => {
+const both = plain.tool === undefined ? undefined : stream.tool;
+requireOrSkip("Python 3 and gfortran", both, "plain Python and Fortran", () => {
   it("agree entry by entry, phases included, though units, axis order and spin unit differ", () => {
     // One block each: the memory belongs to its reader.
     const [a, b] = [readAll(runRecipe(plain)), readAll(runRecipe(stream))];
