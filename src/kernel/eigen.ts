@@ -1,7 +1,8 @@
 // eigen.ts: what are the eigenvalues and eigenvectors of a complex Hermitian matrix?
 
 import { dataFault } from "../base/errors.js";
-import { createReduction, type Reduction, transformBack, tridiagonalise } from "./householder.js";
+import { createReduction, type Reduction, tridiagonalise } from "./householder.js";
+import { transformBack } from "./reflect.js";
 import { createQlStorage, type QlStorage, solveTridiagonal } from "./tridiagonal.js";
 
 /**
