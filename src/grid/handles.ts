@@ -34,12 +34,7 @@ export function createHandles(): Handles {
     read(array, file, position, into, start, length) {
       let done = 0;
       try {
-        const handle = handleOf(file);
-        while (done < length) {
-          const got = readSync(handle, into, start + done, Math.min(length - done, longestRead), position + done);
-          if (got === 0) break;
-          done += got;
-        }
+        done = readFully(handleOf(file), position, into, start, length);
       } catch (error) {
         throw dataFault(
           `arrays.${array}: file ${quoted(file.name)} cannot be read: ${reasonOf(error)}`,
@@ -59,4 +54,15 @@ export function createHandles(): Handles {
       open.clear();
     },
   };
+}
+
+/** Reads until `length` bytes are there or the file ends; returns how many there are. */
+function readFully(handle: number, position: number, into: Uint8Array, start: number, length: number): number {
+  let done = 0;
+  while (done < length) {
+    const got = readSync(handle, into, start + done, Math.min(length - done, longestRead), position + done);
+    if (got === 0) break;
+    done += got;
+  }
+  return done;
 }

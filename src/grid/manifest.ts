@@ -6,8 +6,8 @@ import { energyUnits, hessianUnits, lengthUnits, momentUnits, namesOf, velocityU
 export const manifestName = "bandgrid.json";
 /** Value of its `format` field. */
 export const formatName = "bandgrid/1";
-/** More bands than this cannot be indexed: two matrices' worth of numbers must stay below 2^31. */
-export const mostBands = 16384;
+/** More bands than this cannot be indexed: the 2 x 6 x bands^2 numbers of a k point's hessian must stay below 2^31. */
+export const mostBands = 13000;
 
 const longest = 4096;
 const anyNumber = z.number();

@@ -83,18 +83,7 @@ export function openUncheckedReader(grid: Grid, want: Want): BlockReader {
   return {
     facts,
     read(first, count) {
-      if (
-        !Number.isInteger(first) ||
-        !Number.isInteger(count) ||
-        first < 0 ||
-        count < 1 ||
-        first + count > facts.points
-      ) {
-        throw usageFault(
-          `k points ${first} to ${first + count - 1} were asked for; the grid holds 0 to ${facts.points - 1}`,
-          "Ask for points that are stored.",
-        );
-      }
+      checkRange(first, count, facts.points);
       const velocity: (MatrixBlock | undefined)[] = [undefined, undefined, undefined];
       const moments = new Map<string, (MatrixBlock | undefined)[]>();
       let energyEv = new Float64Array(0) as Float64Array;
@@ -120,6 +109,15 @@ export function openUncheckedReader(grid: Grid, want: Want): BlockReader {
     },
     close: () => handles.close(),
   };
+}
+
+function checkRange(first: number, count: number, points: number): void {
+  const whole = Number.isInteger(first) && Number.isInteger(count);
+  if (whole && first >= 0 && count >= 1 && first + count <= points) return;
+  throw usageFault(
+    `k points ${first} to ${first + count - 1} were asked for; the grid holds 0 to ${points - 1}`,
+    "Ask for points that are stored.",
+  );
 }
 
 /** Reads the bytes of a block of one array into its scratch. */

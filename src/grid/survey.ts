@@ -1,11 +1,13 @@
 // survey.ts: what is in a band grid and can it be trusted? Reads every number once and collects what is wrong.
 import { isFault } from "../base/errors.js";
+import type { ArrayPlan } from "./arrays.js";
 import type { Block } from "./grid.js";
 import { forEachMatrix, type Grid, openUncheckedReader, pointsPerBlock, wantAll } from "./reader.js";
 import {
   componentName,
   type Finding,
   hermitianTolerance,
+  type Report,
   smallestScale,
   storedBits,
   verifyEnergies,
@@ -89,15 +91,7 @@ export function surveyGrid(grid: Grid, onProgress?: Progress, cap = 20): Survey 
       const block = reader.read(first, Math.min(step, facts.points - first));
       widen(ranges, block);
       verifyEnergies(facts, grid.arrays[0], block, report);
-      forEachMatrix(grid, block, (plan, component, matrices) => {
-        const entry = worst.get(plan.name) ?? newWorst();
-        verifyMatrices(facts, plan, block, matrices, component, report, (point, { deviation, largest }) => {
-          entry.largest = Math.max(entry.largest, largest);
-          if (deviation <= entry.deviation) return;
-          const relative = deviation / Math.max(largest, smallestScale);
-          Object.assign(entry, { deviation, relative, point, component: componentName(plan, component) });
-        });
-      });
+      measure(grid, block, worst, report);
       onProgress?.(first + block.count, facts.points);
     }
   } catch (error) {
@@ -112,19 +106,7 @@ export function surveyGrid(grid: Grid, onProgress?: Progress, cap = 20): Survey 
     bandRanges: ranges,
     lowestEv: ranges.reduce((lowest, range) => Math.min(lowest, range.lowestEv), Infinity),
     highestEv: ranges.reduce((highest, range) => Math.max(highest, range.highestEv), -Infinity),
-    arrays: grid.arrays.map((plan) => {
-      const { largest, ...asymmetry } = worst.get(plan.name) ?? newWorst();
-      return {
-        name: plan.name,
-        bytes: plan.files.reduce((sum, file) => sum + file.bytes, 0),
-        files: plan.files.length,
-        type: plan.type,
-        axes: plan.axes,
-        asymmetry,
-        largest,
-        tolerance: plan.role === "energy" ? 0 : hermitianTolerance[storedBits(plan)],
-      };
-    }),
+    arrays: grid.arrays.map((plan) => arraySurvey(plan, worst.get(plan.name) ?? newWorst())),
     slowArrays: grid.slowArrays,
     findings,
     findingsTotal: count.findings,
@@ -134,6 +116,32 @@ export function surveyGrid(grid: Grid, onProgress?: Progress, cap = 20): Survey 
 
 function newWorst(): Worst {
   return { deviation: 0, relative: 0, point: 0, component: "", largest: 0 };
+}
+
+/** Checks the matrices of a block and keeps the worst asymmetry of each array. */
+function measure(grid: Grid, block: Block, worst: ReadonlyMap<string, Worst>, report: Report): void {
+  forEachMatrix(grid, block, (plan, component, matrices) => {
+    const entry = worst.get(plan.name) ?? newWorst();
+    verifyMatrices(grid.facts, plan, block, matrices, component, report, (point, { deviation, largest }) => {
+      entry.largest = Math.max(entry.largest, largest);
+      if (deviation <= entry.deviation) return;
+      const relative = deviation / Math.max(largest, smallestScale);
+      Object.assign(entry, { deviation, relative, point, component: componentName(plan, component) });
+    });
+  });
+}
+
+function arraySurvey(plan: ArrayPlan, { largest, ...asymmetry }: Worst): ArraySurvey {
+  return {
+    name: plan.name,
+    bytes: plan.files.reduce((sum, file) => sum + file.bytes, 0),
+    files: plan.files.length,
+    type: plan.type,
+    axes: plan.axes,
+    asymmetry,
+    largest,
+    tolerance: plan.role === "energy" ? 0 : hermitianTolerance[storedBits(plan)],
+  };
 }
 
 function widen(ranges: { lowestEv: number; highestEv: number }[], block: Block): void {

@@ -28,7 +28,7 @@ export interface GridWriter {
   /** Copies one k point; throws a data Fault when it is not finite, ascending and Hermitian. */
   add(point: PointData): void;
   /** Points taken so far. */
-  readonly written: number;
+  written(): number;
   /** Writes the manifest, moves the directory into its place and opens it. Throws when points are missing. */
   finish(): Grid;
   /** Removes what was written. For interrupts; harmless after finish. */
@@ -43,22 +43,10 @@ export function createGridWriter(directory: string, description: GridDescription
   const facts = checkedFacts(directory, description, layout);
   const destination = checkTarget(directory);
   const beside = makeBeside(destination);
-  const state = { written: 0, held: 0, open: true };
-  const targets: Target[] = [];
-  const discard = (): void => {
-    if (!state.open) return;
-    state.open = false;
-    targets.forEach(closeTarget);
-    removeFlat(beside);
-  };
   const planned = planLayout(beside, description, layout);
-  const blockPoints = blockPointsOf(planned, facts.points, layout.blockBytes ?? defaultBlockBytes);
-  try {
-    for (const array of planned) targets.push(createTarget(array, blockPoints));
-  } catch (error) {
-    discard();
-    throw error;
-  }
+  const blockPoints = blockPointsOf(planned, facts.points, layout.blockBytes);
+  const targets = createTargets(beside, planned, blockPoints);
+  const state = { written: 0, held: 0, open: true };
   const add = (point: PointData): void => {
     if (!state.open || state.written >= facts.points) {
       throw usageFault(`the grid holds ${facts.points} k points; no more can be added`, "Add each k point once.");
@@ -84,14 +72,22 @@ export function createGridWriter(directory: string, description: GridDescription
     state.open = false;
     return openGrid(directory);
   };
-  return {
-    add,
-    finish,
-    discard,
-    get written() {
-      return state.written;
-    },
+  const discard = (): void => {
+    if (!state.open) return;
+    state.open = false;
+    targets.forEach(closeTarget);
+    removeFlat(beside);
   };
+  return { add, finish, discard, written: () => state.written };
+}
+
+function createTargets(directory: string, planned: readonly PlannedArray[], blockPoints: number): Target[] {
+  try {
+    return planned.map((array) => createTarget(array, blockPoints));
+  } catch (error) {
+    removeFlat(directory);
+    throw error;
+  }
 }
 
 const defaultBlockBytes = 16 * 1024 * 1024;
@@ -103,7 +99,7 @@ function checkedFacts(directory: string, description: GridDescription, layout: G
   return { ...facts, directory, sha256: "", bytes: 0 };
 }
 
-function blockPointsOf(planned: readonly PlannedArray[], points: number, bytes: number): number {
+function blockPointsOf(planned: readonly PlannedArray[], points: number, bytes = defaultBlockBytes): number {
   const perPoint = planned.reduce((sum, array) => sum + pointLength(array), 0);
   return Math.max(1, Math.min(points, Math.floor(bytes / (8 * perPoint))));
 }

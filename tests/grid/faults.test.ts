@@ -154,7 +154,7 @@ const cases: Case[] = [
   ["an offset of 1", field("mesh.offset", [0, 1, 0]), /mesh\.offset\[1\] is 1: it must lie in \[0, 1\)/],
   ["no mesh", field("mesh", undefined), /mesh is missing/],
   ["no bands", field("bands", 0), /bands is 0/],
-  ["too many bands", field("bands", 1e6), /bands is 1000000: it must be at most 16384/],
+  ["too many bands", field("bands", 1e6), /bands is 1000000: it must be at most 13000/],
   ["three electrons per band", field("electronsPerBand", 3), /electronsPerBand is 3: it must be 1 or 2/],
   ["no level", field("level", { unit: "eV" }), /neither fermi nor electrons/],
   ["too many electrons", field("level.electrons", 2.5), /level\.electrons is 2\.5.*= 2/],

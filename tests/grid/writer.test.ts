@@ -23,7 +23,7 @@ describe("a writer", () => {
       expect(existsSync(directory)).toBe(false);
       writer.add(point);
     }
-    expect(writer.written).toBe(12);
+    expect(writer.written()).toBe(12);
     expect(() => writer.add(points[0])).toThrow(/no more can be added/);
     writer.finish();
     expect(readdirSync(dirname(directory))).toEqual(["grid"]);
