@@ -29,7 +29,7 @@ describe("the rules find what they are for", () => {
 
   it("sees every way in which one file can name another", () => {
     const source = `import type { A } from "./a.js";\nexport * from "../b.js";\nconst c = await import("./c.js");
-      new Worker(new URL("./d.js", import.meta.url)); import fs from "node:fs"; // import "./comment.js"`;
+      new Worker(new URL("./d.js", import.meta.url)); new URL("../data/e.json", import.meta.url); import fs from "node:fs"; // import "./comment.js"`;
     expect(relativeSpecifiers(source).sort()).toEqual(["../b.js", "./a.js", "./c.js", "./d.js"]);
   });
 

@@ -11,10 +11,10 @@ export function foldersInOrder(developersPage: string): string[] {
   return [...developersPage.matchAll(/^\|\s*`([a-z-]+)\/`\s*\|/gm)].map((row) => row[1]!);
 }
 
-/** Relative specifiers in a source: imports, re-exports, dynamic imports and worker addresses, new URL("./x.js", ...). */
+/** Relative specifiers in a source: imports, re-exports, dynamic imports, addresses of workers in new URL("./x.js", ...). */
 export function relativeSpecifiers(source: string): string[] {
   const imported = ts.preProcessFile(source, true, true).importedFiles.map((file) => file.fileName);
-  const addressed = [...source.matchAll(/new URL\(\s*["'`]([^"'`]+)["'`]/g)].map((match) => match[1]!);
+  const addressed = [...source.matchAll(/new URL\(\s*["'`]([^"'`]+\.js)["'`]/g)].map((match) => match[1]!);
   return [...imported, ...addressed].filter((specifier) => specifier.startsWith("."));
 }
 
