@@ -10,7 +10,7 @@ import { createEigensolver } from "./eigen.js";
 import { addMultiple, createHamiltonian } from "./hamiltonian.js";
 import type { Denominator, PointRef } from "./kernel.js";
 import { createOperatorStore, type OperatorSpec, type OperatorStore, type Pack } from "./operators.js";
-import { addPairs, fillInverse, packPairs, pairCount, weighPairs } from "./pairs.js";
+import { addPairs, fillInverse, packAntiHermitian, packHermitian, pairCount, weighPairs } from "./pairs.js";
 import { multiplyInto } from "./product.js";
 
 /** What a local model is asked for. */
@@ -69,9 +69,12 @@ function createRotation(bands: number, store: OperatorStore): Rotation {
 
   const rotate = (pack: Pack, q: Float64Array, slopes: Float64Array, pairs: Float64Array) => {
     const { operators, shape, offset, terms } = pack;
-    for (let i = 0; i < length; i++) packed[i] = data[offset + i];
-    for (const { direction, offset: from } of terms) addMultiple(length, q[direction], data, from, packed, 0);
-    multiplyInto(size, shape, packed, 0, columns, 0, moved, 0);
+    const moves = terms.length > 0;
+    if (moves) {
+      for (let i = 0; i < length; i++) packed[i] = data[offset + i];
+      for (const { direction, offset: from } of terms) addMultiple(length, q[direction], data, from, packed, 0);
+    }
+    multiplyInto(size, shape, moves ? packed : data, moves ? 0 : offset, columns, 0, moved, 0);
     if (shape === "lower") {
       addLowerSlopes(bands, size, columns, moved, operators[0].direction, slopes);
       return;
@@ -79,15 +82,9 @@ function createRotation(bands: number, store: OperatorStore): Rotation {
     multiplyInto(size, "full", conjugate, 0, moved, 0, rotated, 0);
     for (let i = 0; i < operators.length; i++) {
       const { moment, direction } = operators[i];
-      packPairs(
-        bands,
-        size,
-        i === 0 ? "first" : "second",
-        rotated,
-        0,
-        pairs,
-        pack.pairOffset + i * bands * (bands - 1),
-      );
+      const at = pack.pairOffset + i * bands * (bands - 1);
+      if (i === 0) packHermitian(bands, size, rotated, 0, pairs, at);
+      else packAntiHermitian(bands, size, rotated, 0, pairs, at);
       if (moment >= 0) continue;
       for (let n = 0; n < bands; n++) slopes[3 * n + direction] = rotated[2 * (n * size + n) + i];
     }

@@ -4,7 +4,7 @@
 // flow direction; the charge current needs none. The matrix product is where the time goes.
 
 import type { Denominator, MatrixRef, PointRef, Product } from "./kernel.js";
-import { addPairs, fillInverse, packPairs, pairCount, weighPairs } from "./pairs.js";
+import { addPairs, fillInverse, packHermitian, pairCount, weighPairs } from "./pairs.js";
 import { copyPadded, multiplyInto } from "./product.js";
 
 /** The pair sum at one point after another; scratch is kept inside, so one pass serves one thread. */
@@ -62,7 +62,7 @@ function createCurrent(bands: number) {
       copyPadded(bands, size, v.data, v.offset, right, 0);
       multiplyInto(size, "full", left, 0, right, 0, product, 0);
     }
-    packPairs(bands, size, "first", product, 0, out, 0);
+    packHermitian(bands, size, product, 0, out, 0);
   };
 }
 
@@ -80,13 +80,13 @@ export function createPairPass(bands: number, products: readonly Product[], deno
     fillInverse(bands, point.energyEv, point.energyOffset, denominator, inverse, 0);
     for (const field of fields) {
       const { data, offset } = point.velocity[field] as MatrixRef;
-      packPairs(bands, bands, "first", data, offset, elements, 0);
+      packHermitian(bands, bands, data, offset, elements, 0);
       weighPairs(count, elements, 0, inverse, 0, weights, field * 2 * count);
     }
     out.fill(0, 0, products.length * bands);
     for (const { moment, flow, members } of groups) {
       const v = point.velocity[flow] as MatrixRef;
-      if (moment < 0) packPairs(bands, bands, "first", v.data, v.offset, elements, 0);
+      if (moment < 0) packHermitian(bands, bands, v.data, v.offset, elements, 0);
       else formCurrent(point.moments[moment], v, elements);
       for (let i = 0; i < members.length; i += 2) {
         addPairs(bands, elements, 0, weights, members[i] * 2 * count, out, members[i + 1] * bands);

@@ -34,13 +34,12 @@ export function fillInverse(
 }
 
 /**
- * Writes the elements <n|A|m> of every pair. `matrix` (row length `size`) holds C at `offset`; A is its Hermitian part
- * (C + C^H) / 2, or with "second" the B of C = A + i B, which is (C - C^H) / 2i.
+ * Writes the elements <n|A|m> of every pair, A the Hermitian part (C + C^H) / 2 of the matrix C that lies at `offset`
+ * with row length `size`.
  */
-export function packPairs(
+export function packHermitian(
   bands: number,
   size: number,
-  part: "first" | "second",
   matrix: Float64Array,
   offset: number,
   out: Float64Array,
@@ -52,13 +51,32 @@ export function packPairs(
     let x = offset + n * step + 2 * n + 2;
     let y = offset + (n + 1) * step + 2 * n;
     for (let m = n + 1; m < bands; m++) {
-      if (part === "first") {
-        out[to] = 0.5 * (matrix[x] + matrix[y]);
-        out[to + 1] = 0.5 * (matrix[x + 1] - matrix[y + 1]);
-      } else {
-        out[to] = 0.5 * (matrix[x + 1] + matrix[y + 1]);
-        out[to + 1] = 0.5 * (matrix[y] - matrix[x]);
-      }
+      out[to] = 0.5 * (matrix[x] + matrix[y]);
+      out[to + 1] = 0.5 * (matrix[x + 1] - matrix[y + 1]);
+      to += 2;
+      x += 2;
+      y += step;
+    }
+  }
+}
+
+/** As packHermitian, for the B of C = A + i B with A and B Hermitian: B = (C - C^H) / 2i. */
+export function packAntiHermitian(
+  bands: number,
+  size: number,
+  matrix: Float64Array,
+  offset: number,
+  out: Float64Array,
+  outOffset: number,
+): void {
+  const step = 2 * size;
+  let to = outOffset;
+  for (let n = 0; n < bands; n++) {
+    let x = offset + n * step + 2 * n + 2;
+    let y = offset + (n + 1) * step + 2 * n;
+    for (let m = n + 1; m < bands; m++) {
+      out[to] = 0.5 * (matrix[x + 1] + matrix[y + 1]);
+      out[to + 1] = 0.5 * (matrix[y] - matrix[x]);
       to += 2;
       x += 2;
       y += step;
