@@ -27,6 +27,9 @@ export function readJob(path: string, study: string): Record<string, unknown> {
   if (!isRecord(job)) throw usageFault(`--job ${path} holds no options`, 'write e.g. { "response": ["spin:hall"] }');
   const { study: stated, ...options } = job;
   if (stated !== undefined && stated !== study)
-    throw usageFault(`--job ${path} is a job of "${String(stated)}", not of "${study}"`, `run tidegauge ${String(stated)}`);
+    throw usageFault(
+      `--job ${path} is a job of "${String(stated)}", not of "${study}"`,
+      `run tidegauge ${String(stated)}`,
+    );
   return options;
 }

@@ -13,6 +13,19 @@ export interface SweepJob {
   readonly axis: LevelAxis;
 }
 
+/** What the refinement pass needs besides: from the options, and from what the first pass over the stored points found. */
+export interface RefineJob extends SweepJob {
+  /** Regularises the denominators of the neighbour defect, eV. */
+  readonly regularEv: number;
+  /** Tolerated error of each column (the last counts states), zone-mean units. */
+  readonly tolerance: readonly number[];
+  /** A family of boxes is halved further above this part of the tolerance. */
+  readonly splitAbove: number;
+  readonly depthLimit: number;
+  /** Samples allowed in one cell. */
+  readonly samplesPerCell: number;
+}
+
 /** A run of stored k points: the unit of work, cut by the grid alone. */
 export interface Task {
   readonly first: number;

@@ -2,7 +2,7 @@
 import { openReader } from "../grid/reader.js";
 import type { BlockReader, GridFacts, Triple } from "../grid/grid.js";
 import { openGrid } from "../grid/open.js";
-import { createPairPass, slopes } from "../kernel/pair.js";
+import { createPairPass } from "../kernel/pair.js";
 import type { Sections } from "../spectrum/sections.js";
 import { cellEdges, smallestSubMeshes, subMeshOf } from "../zone/mesh.js";
 import { walkPoints } from "./blocks.js";
@@ -51,7 +51,7 @@ export function meshPass(job: SweepJob, task: Task): Sections {
   const values = new Float64Array(columnCount(job.plan));
   walkPoints(reader, task, job.plan.moments, (flat, point) => {
     pass.run(point, curvature);
-    if (job.method !== "points") slopes(point, slope);
+    if (job.method !== "points") pass.slopes(point, slope);
     const coset = sub === undefined ? 0 : subMeshOf(flat, facts, sub);
     for (let band = 0; band < bands; band++) {
       fillColumns(job.plan, curvature, bands, band, values);

@@ -2,7 +2,7 @@
 import { z } from "zod";
 import { isFault } from "../base/errors.js";
 import { productVersion } from "../base/version.js";
-import { countBelow, referenceLevel } from "../engine/reference.js";
+import { countBelow, referenceLevel } from "./reference.js";
 import type { ArrayPlan } from "../grid/arrays.js";
 import { verifyDigests } from "../grid/fingerprint.js";
 import type { GridFacts } from "../grid/grid.js";

@@ -14,7 +14,7 @@ import {
 } from "../curves/assemble.js";
 import type { CurvesResult, ResponseCurve, Table } from "../curves/result.js";
 import { cutTasks, type SweepJob } from "../engine/job.js";
-import { countBelow, type ReferenceLevel, referenceLevel } from "../engine/reference.js";
+import { countBelow, type ReferenceLevel, referenceLevel } from "./reference.js";
 import { type RunOptions, runTasks } from "../engine/run.js";
 import type { GridFacts } from "../grid/grid.js";
 import { openGrid } from "../grid/open.js";

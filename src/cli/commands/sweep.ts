@@ -4,7 +4,7 @@ import { availableParallelism } from "node:os";
 import { join } from "node:path";
 import type { Command } from "commander";
 import { z } from "zod";
-import { writeFileAtomically } from "../../base/atomic.js";
+import { writeAtomically } from "../../base/atomic.js";
 import type { CurvesResult } from "../../curves/result.js";
 import { curvesCsv } from "../../report/csv.js";
 import { curvesJson } from "../../report/json.js";
@@ -59,7 +59,10 @@ export function register(program: Command, context: Context): void {
     .option("--method <NAME>", "cells: bands linear inside each mesh cell (default); points: the plain mesh sum")
     .option("--degenerate <EV>", "pairs of bands closer than this are taken as degenerate (default 1e-5)")
     .option("--broaden <EV>", "eta in 1/((E_n - E_m)^2 + eta^2) (default 0)")
-    .option("--unit <UNIT>", 'unit of the responses, e.g. "(hbar/2e) S/cm", "S/m"; the default is stated in every result')
+    .option(
+      "--unit <UNIT>",
+      'unit of the responses, e.g. "(hbar/2e) S/cm", "S/m"; the default is stated in every result',
+    )
     .option("--job <FILE>", "options from a JSON file or from an earlier curves.json; options typed here win")
     .option("--workers <N>", "worker threads (default one per core); the numbers do not depend on it")
     .addHelpText("after", examples);
@@ -92,6 +95,6 @@ function deliver(result: CurvesResult, globals: GlobalOptions, { terminal }: Con
     ["curves.json", curvesJson(result)],
     ["curves.svg", curvesSvg(result)],
   ];
-  for (const [name, text] of files) writeFileAtomically(join(globals.out, name), text);
+  for (const [name, text] of files) writeAtomically(join(globals.out, name), text);
   terminal.note(`wrote ${files.map(([name]) => name).join(", ")} to ${globals.out}`);
 }

@@ -5,7 +5,7 @@ import { openGrid } from "../grid/open.js";
 import { openReader } from "../grid/reader.js";
 import { planAxis } from "../spectrum/axis.js";
 import { createPointDeposit, createPointStore } from "../spectrum/points.js";
-import { walkPoints } from "./blocks.js";
+import { walkPoints } from "../engine/blocks.js";
 
 /** Temperature at which a metal's level is sought: a stored mesh is too coarse for a sharp step. */
 export const referenceTemperatureK = 300;
