@@ -2,7 +2,6 @@
 import { z } from "zod";
 import { isFault } from "../base/errors.js";
 import { productVersion } from "../base/version.js";
-import { countBelow, referenceLevel } from "./reference.js";
 import type { ArrayPlan } from "../grid/arrays.js";
 import { verifyDigests } from "../grid/fingerprint.js";
 import type { GridFacts } from "../grid/grid.js";
@@ -12,6 +11,7 @@ import { energyUnits, hessianUnits, momentUnits, velocityUnits } from "../grid/u
 import { cellArea, cellVolume } from "../zone/lattice.js";
 import type { GridContents, InspectedArray, InspectedGrid, InspectedLevel, InspectResult } from "./inspect-result.js";
 import { warningsOf } from "./inspect-warnings.js";
+import { countBelow, referenceLevel } from "./reference.js";
 
 /** Options of an inspection. */
 export const inspectOptions = z.strictObject({

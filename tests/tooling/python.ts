@@ -14,11 +14,6 @@ export function numpyPython(): string | undefined {
   return found.path;
 }
 
-/** The Fortran compiler's name, undefined when there is none. */
-export function fortranCompiler(): string | undefined {
-  return spawnSync("gfortran", ["--version"], { stdio: "ignore" }).status === 0 ? "gfortran" : undefined;
-}
-
 /**
  * Declares a suite that needs an outside tool: `body` gets the tool. Where it is missing the suite is skipped under a
  * name that says why; with CI=true, where everything must run, its absence is a failure.
