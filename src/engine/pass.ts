@@ -2,6 +2,7 @@
 import { openReader } from "../grid/reader.js";
 import type { BlockReader, GridFacts, Triple } from "../grid/grid.js";
 import { openGrid } from "../grid/open.js";
+import type { MatrixRef, PointRef } from "../kernel/kernel.js";
 import { createPairPass } from "../kernel/pair.js";
 import type { Sections } from "../spectrum/sections.js";
 import { cellEdges, smallestSubMeshes, subMeshOf } from "../zone/mesh.js";
@@ -16,6 +17,35 @@ export function spanWidths(slope: Float64Array, band: number, edges: readonly Tr
   for (let j = 0; j < edges.length; j++) {
     const [x, y, z] = edges[j];
     out[j] = Math.abs(slope[at] * x + slope[at + 1] * y + slope[at + 2] * z);
+  }
+}
+
+/** Bands first .. end - 1 that count as one set: each closer to the one before it than the degeneracy tolerance. */
+function setEnd(point: PointRef, first: number, degenerateEv: number): number {
+  const { energyEv, energyOffset, bands } = point;
+  let end = first + 1;
+  while (end < bands && energyEv[energyOffset + end] - energyEv[energyOffset + end - 1] < degenerateEv) end++;
+  return end;
+}
+
+/**
+ * Widths (eV) that the bands of a set span along each edge of their cell: the root mean square of the set's block of
+ * dH/dk . edge, sqrt(sum |<n|v|m>|^2 / count), which no change of basis within the set alters. A single band: |slope . edge|.
+ */
+function setWidths(point: PointRef, first: number, end: number, edges: readonly Triple[], out: Float64Array): void {
+  const { bands } = point;
+  const [x, y, z] = point.velocity as readonly MatrixRef[];
+  for (let j = 0; j < edges.length; j++) {
+    const [ex, ey, ez] = edges[j];
+    let square = 0;
+    for (let n = first; n < end; n++)
+      for (let m = first; m < end; m++) {
+        const at = 2 * (n * bands + m);
+        const re = ex * x.data[x.offset + at] + ey * y.data[y.offset + at] + ez * z.data[z.offset + at];
+        const im = ex * x.data[x.offset + at + 1] + ey * y.data[y.offset + at + 1] + ez * z.data[z.offset + at + 1];
+        square += re * re + im * im;
+      }
+    out[j] = Math.sqrt(square / (end - first));
   }
 }
 
@@ -46,16 +76,18 @@ export function meshPass(job: SweepJob, task: Task): Sections {
   const sub = smallestSubMeshes(facts);
   const edges = cellEdges(facts);
   const curvature = new Float64Array(job.plan.products.length * bands);
-  const slope = new Float64Array(3 * bands);
   const widths = new Float64Array(edges.length);
   const values = new Float64Array(columnCount(job.plan));
   walkPoints(reader, task, job.plan.moments, (flat, point) => {
     pass.run(point, curvature);
-    if (job.method !== "points") pass.slopes(point, slope);
     const coset = sub === undefined ? 0 : subMeshOf(flat, facts, sub);
+    let end = 0;
     for (let band = 0; band < bands; band++) {
+      if (band === end) {
+        end = setEnd(point, band, job.denominator.degenerateEv);
+        if (job.method !== "points") setWidths(point, band, end, edges, widths);
+      }
       fillColumns(job.plan, curvature, bands, band, values);
-      spanWidths(slope, band, edges, widths);
       for (const [, tally] of kept) tally.add(point.energyEv[point.energyOffset + band], widths, values, coset);
     }
   });
