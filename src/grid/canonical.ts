@@ -105,15 +105,15 @@ function scale(numbers: Numbers, factor: number): void {
 }
 
 /**
- * Fills `bytes` (the memory of `stage`, all components) with the file's form of `values`, canonical [k][band] for energies
- * or [k][component][bra][ket][re, im] for matrices. A real type keeps the real parts.
+ * The file's form of `values` for all components of `stage`: canonical [k][band] for energies or [k][component][bra][ket][re, im]
+ * for matrices come in. A real type keeps the real parts. Where memory and file agree it is `values` itself, else new memory.
  */
-export function toFileForm(plan: ArrayPlan, stage: Stage, values: Float64Array, bytes: Uint8Array): void {
+export function fileForm(plan: ArrayPlan, stage: Stage, values: Float64Array): Uint8Array {
+  if (plan.type === "complex128" && plan.factor === 1 && plan.byteOrder === machine && liesAsInMemory(plan, stage))
+    return new Uint8Array(values.buffer, values.byteOffset, values.byteLength);
+  const bytes = new Uint8Array(stage.elements * elementBytes[plan.type]);
   const single = plan.type === "float32" || plan.type === "complex64";
-  const buffer = bytes.buffer as ArrayBuffer;
-  const numbers = single
-    ? new Float32Array(buffer, 0, bytes.length / 4)
-    : new Float64Array(buffer, 0, bytes.length / 8);
+  const numbers = single ? new Float32Array(bytes.buffer) : new Float64Array(bytes.buffer);
   const { count } = stage;
   const { bands, components } = plan;
   // Dividing gives the nearest number; multiplying by a reciprocal would not.
@@ -131,4 +131,12 @@ export function toFileForm(plan: ArrayPlan, stage: Stage, values: Float64Array, 
     ops.divs(ndarray(numbers, shape, [...places, 1], 0), source, plan.factor);
   }
   swapIfNeeded(plan, bytes);
+  return bytes;
+}
+
+/** Whether the file's order of a matrix array is that of the block in memory: k, component, bra, ket. */
+function liesAsInMemory({ bands, components }: ArrayPlan, stage: Stage): boolean {
+  const { k, component, bra, ket } = stridesOf(stage);
+  const matrix = bands * bands;
+  return ket === 1 && bra === bands && (components === 1 || component === matrix) && k === components * matrix;
 }

@@ -1,8 +1,8 @@
 // target.ts: one array while it is being written: its block of k points in memory, and its files.
 import { closeSync, openSync, writeFileSync, writeSync } from "node:fs";
 import { dataFault, type Fault, usageFault } from "../base/errors.js";
-import { axisSize, elementBytes, type FilePlan, isComplex, npyType } from "./arrays.js";
-import { toFileForm } from "./canonical.js";
+import { axisSize, type FilePlan, isComplex, npyType } from "./arrays.js";
+import { fileForm } from "./canonical.js";
 import type { Block, GridFacts, MatrixBlock } from "./grid.js";
 import { reasonOf } from "./jsontext.js";
 import type { PlannedArray } from "./layout.js";
@@ -106,8 +106,7 @@ export function writeBlock(target: Target, first: number, count: number): void {
   const { plan, buffer, perPoint } = target;
   const all = Array.from({ length: plan.components }, (_, component) => component);
   const stage = stageOf(plan, count, all);
-  const bytes = new Uint8Array(stage.elements * elementBytes[plan.type]);
-  toFileForm(plan, stage, buffer.subarray(0, count * perPoint), bytes);
+  const bytes = fileForm(plan, stage, buffer.subarray(0, count * perPoint));
   try {
     forEachPiece(plan, stage, first, (file, filePosition, stagePosition, length) => {
       const handle = handleOf(target, file);

@@ -2,7 +2,7 @@
 import { bohrA, rydbergEv } from "../base/constants.js";
 import type { Triple } from "../grid/grid.js";
 import type { TwoCentreFile } from "./two-centre-file.js";
-import { bondBlock, integralNames, type IntegralName } from "./two-centre-integrals.js";
+import { bondBlock, type IntegralName, integralNames } from "./two-centre-integrals.js";
 import { halfShell, type Vectors } from "./two-centre-lattice.js";
 
 /** Value, 3 first and 6 second derivatives: index 0; 1..3 = x, y, z; 4..9 = xx, yy, zz, yz, zx, xy. */
