@@ -63,7 +63,7 @@ const hessianWords = {
 } as const;
 
 function cellWords({ lattice_A: rows, periodic, cell_size: size }: GridContents): string {
-  const vectors = rows.map((row) => `(${row.map((x) => plain(x, 5)).join(", ")})`).join(" ");
+  const vectors = rows.map((row) => `(${row.map((x) => plain(x, 5)).join(",")})`).join(" ");
   return `${periodic === 3 ? "crystal" : "layer"}, ${plain(size, 5)} A^${periodic}; a1 a2 a3 in A: ${vectors}`;
 }
 

@@ -28,14 +28,24 @@ export function readingAt(
   return { levelEv, value: between(value), error: between(error), index: weight < 0.5 ? left : right };
 }
 
-/** The level where the magnitude is largest (the first such); undefined when the curve holds no number. */
+/** Magnitudes that differ by less than this part of themselves are one: a plateau, up to round-off. */
+const plateau = 1e-9;
+
+/**
+ * The level where the magnitude is largest; on a plateau the level nearest to the reference. Undefined when the curve
+ * holds no number.
+ */
 export function largestOf(
   levels: readonly number[],
   value: readonly number[],
   error: readonly number[],
 ): Reading | undefined {
+  const size = (at: number): number => (Number.isFinite(value[at]) ? Math.abs(value[at]) : -1);
+  const largest = levels.reduce((most, _, at) => Math.max(most, size(at)), -1);
   let best = -1;
-  for (let at = 0; at < levels.length; at++)
-    if (Number.isFinite(value[at]) && (best < 0 || Math.abs(value[at]) > Math.abs(value[best]))) best = at;
+  for (let at = 0; at < levels.length && largest >= 0; at++) {
+    if (size(at) < largest * (1 - plateau)) continue;
+    if (best < 0 || Math.abs(levels[at]) < Math.abs(levels[best])) best = at;
+  }
   return best < 0 ? undefined : { levelEv: levels[best], value: value[best], error: error[best], index: best };
 }

@@ -57,9 +57,12 @@ function headline(result: CurvesResult): string {
   const doped = Number.isFinite(added)
     ? `, which takes ${plain(Math.abs(added), 3)} electrons per cell ${added < 0 ? "fewer" : "more"}`
     : "";
+  const kelvin = `At ${plain(result.temperature_K[0])} K ${name}`;
+  if (here !== undefined && Math.abs(most.levelEv) < 1e-9 && levels.length > 1)
+    return `${kelvin} is ${withError(here.value, here.error)} ${unit} at the reference level, its largest magnitude in the window.`;
   const start = here === undefined ? "" : `is ${withError(here.value, here.error)} ${unit} at the reference level and `;
   return (
-    `At ${plain(result.temperature_K[0])} K ${name} ${start}reaches ${withError(most.value, most.error)} ${unit}, its largest ` +
+    `${kelvin} ${start}reaches ${withError(most.value, most.error)} ${unit}, its largest ` +
     `magnitude in the window, at ${plain(most.levelEv, 4)} eV${doped}.`
   );
 }

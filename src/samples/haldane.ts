@@ -32,7 +32,7 @@ export function haldaneModel(given: Partial<ValuesOf<typeof haldaneParameters>> 
   const mirrored = Math.abs(t2 * Math.cos(phi)) < 1e-12;
   return {
     name: "haldane",
-    title: `Haldane model, t1 = ${t1}, t2 = ${t2}, phi = ${phi}, M = ${M} (eV)`,
+    title: `Haldane model, t1 = ${t1}, t2 = ${t2}, phi = ${Number(phi.toPrecision(7))}, M = ${M} (eV)`,
     source: "F. D. M. Haldane, Phys. Rev. Lett. 61, 2015 (1988)",
     vectorsA: honeycombVectorsA,
     periodic: 2,

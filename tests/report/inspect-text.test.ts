@@ -63,8 +63,7 @@ describe("the text of an inspection", () => {
     expect(inspectText(result(), 80)).toMatchInlineSnapshot(`
       "a: sound; every number was read
         title              two [31m bands and a line
-        cell               crystal, 6 A^3; a1 a2 a3 in A: (1, 0, 0) (0, 2, 0) (0, 0,
-                           3)
+        cell               crystal, 6 A^3; a1 a2 a3 in A: (1,0,0) (0,2,0) (0,0,3)
         mesh               4 x 6 x 8, offset 0.5 0 0: 192 k points, 1.54 MB
         bands              2, two electrons each (spin-degenerate), from -1 to 2 eV
         level              0.3 eV (the Fermi level stated by the grid), crossed by

@@ -56,6 +56,12 @@ describe("readings", () => {
     expect(largestOf(levels, [Number.NaN, 0, Number.NaN, 0], error)?.index).toBe(1);
     expect(largestOf([0], [Number.NaN], [0])).toBeUndefined();
   });
+
+  it("takes the level nearest to the reference where the largest magnitude is a plateau, up to round-off", () => {
+    const flat = [-1, -1 - 1e-12, -1 + 2e-13, -1, 0.5];
+    expect(largestOf([-0.4, -0.2, 0.1, 0.3, 0.5], flat, flat)?.index).toBe(2);
+    expect(largestOf([-0.4, -0.2, 0.1], [0, 0, 0], [0, 0, 0])?.levelEv).toBe(0.1);
+  });
 });
 
 describe("sparkline", () => {

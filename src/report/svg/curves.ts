@@ -68,7 +68,7 @@ function headingAt(panel: Panel, widthPx: number, topPx: number): Placed {
   if (textWidthPx(`${panel.words}   ${rest}`, 13) <= roomPx)
     return {
       markup: `<text x="${edgePx}" y="${topPx + 13}" font-size="13" fill="${tone.ink}"><tspan font-weight="600">${escapeXml(panel.words)}</tspan><tspan dx="8" font-size="12" fill="${tone.faint}">${escapeXml(rest)}</tspan></text>`,
-      bottomPx: topPx + 20,
+      bottomPx: topPx + 24,
     };
   const lines = [
     ...fittingLines(panel.words, roomPx, 13).map((text) => ({ text, bold: true })),
@@ -82,7 +82,7 @@ function headingAt(panel: Panel, widthPx: number, topPx: number): Placed {
       bold ? { sizePx: 13, colour: tone.ink, bold } : { sizePx: 12, colour: tone.faint },
     ),
   );
-  return { markup: markup.join(""), bottomPx: topPx + 4 + 16 * lines.length };
+  return { markup: markup.join(""), bottomPx: topPx + 8 + 16 * lines.length };
 }
 
 function panelAt(
