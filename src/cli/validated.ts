@@ -44,3 +44,9 @@ export const typedWhole = (least: number): z.ZodType<number, unknown> => {
   const expected = `expected a whole number of at least ${least}`;
   return typedNumber(expected).refine((value) => Number.isInteger(value) && value >= least, { error: expected });
 };
+
+/** A part of a whole, as typed: "1%" or "0.01". */
+export const typedShare: z.ZodType<number, unknown> = z
+  .string()
+  .transform((text) => (/%\s*$/.test(text) ? Number(text.replace(/%\s*$/, "")) / 100 : Number(text)))
+  .refine((value) => Number.isFinite(value) && value > 0 && value <= 1, { error: "expected a share such as 1% or 0.01" });

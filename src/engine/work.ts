@@ -1,14 +1,16 @@
 // work.ts: what a worker does: one task of one kind of work. Also called in place when there is only one worker.
 import { Fault, type FaultKind, isFault } from "../base/errors.js";
 import type { Sections } from "../spectrum/sections.js";
-import type { SweepJob, Task } from "./job.js";
+import type { RefineJob, SweepJob, Task } from "./job.js";
 import { meshPass } from "./pass.js";
+import { refinePass } from "./refine-pass.js";
+import { surveyPass } from "./survey-pass.js";
 
-/** Kinds of work a worker knows. */
-export interface Work {
-  readonly kind: "mesh";
-  readonly job: SweepJob;
-}
+/** Kinds of work a worker knows: the methods `points` and `cells`, and the two passes of `refine`. */
+export type Work =
+  | { readonly kind: "mesh"; readonly job: SweepJob }
+  | { readonly kind: "survey"; readonly job: SweepJob; readonly regularEv: number }
+  | { readonly kind: "refine"; readonly job: RefineJob };
 
 export interface Order {
   readonly work: Work;
@@ -17,7 +19,14 @@ export interface Order {
 
 /** Performs one task; the result's arrays belong to the caller. */
 export function performTask({ work, task }: Order): Sections {
-  return meshPass(work.job, task);
+  switch (work.kind) {
+    case "mesh":
+      return meshPass(work.job, task);
+    case "survey":
+      return surveyPass(work.job, work.regularEv, task);
+    case "refine":
+      return refinePass(work.job, task);
+  }
 }
 
 /** A result as it crosses a thread boundary, where an error would lose its kind and cure. */

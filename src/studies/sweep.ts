@@ -13,7 +13,11 @@ import {
   spreadCurves,
 } from "../curves/assemble.js";
 import type { CurvesResult, ResponseCurve, Table } from "../curves/result.js";
-import { cutTasks, type SweepJob } from "../engine/job.js";
+import { type RefinedErrors, refinedErrors } from "../curves/refined.js";
+import { cutTasks, type RefineJob, type SweepJob } from "../engine/job.js";
+import { resolvedEnergy } from "../engine/mesh-step.js";
+import { planRefinement } from "../engine/refine-plan.js";
+import { counters } from "../engine/refiner.js";
 import { countBelow, type ReferenceLevel, referenceLevel } from "./reference.js";
 import { type RunOptions, runTasks } from "../engine/run.js";
 import type { GridFacts } from "../grid/grid.js";
@@ -30,7 +34,9 @@ export const sweepOptions = z.strictObject({
   to: z.number().min(-1000).max(1000).default(1),
   points: z.int().min(1).max(20001).default(201),
   temperature: z.array(z.number().min(0).max(100000)).min(1).max(64).default([0, 300]),
-  method: z.enum(["cells", "points"]).default("cells"),
+  method: z.enum(["refine", "cells", "points"]).default("refine"),
+  accuracy: z.number().min(1e-6).max(1).default(0.01),
+  samples: z.int().min(1000).max(1e10).optional(),
   degenerate: z.number().min(0).max(10).default(1e-5),
   broaden: z.number().min(0).max(100).default(0),
   unit: z.string().max(40).optional(),
@@ -77,11 +83,32 @@ export function planSweep(directory: string, options: SweepOptions): SweepPlan {
 
 const unitOf = (carrier: string, facts: GridFacts, options: SweepOptions) => responseUnit(carrier, facts, options.unit);
 
+/** Spectra of a planned sweep, and the settings of its refinement if it had one. */
+interface Computed {
+  readonly sections: Sections;
+  readonly refined: RefineJob | undefined;
+}
+
+/** Samples that may be spent where the user names no number. */
+const defaultSamples = (points: number): number => 1_000_000 + 30 * points;
+
+async function compute({ job, facts, options }: SweepPlan, run: RunOptions): Promise<Computed> {
+  const tasks = cutTasks(facts.points);
+  if (job.method !== "refine") return { sections: await runTasks({ kind: "mesh", job }, tasks, run), refined: undefined };
+  const levels = job.axis.levelsEv;
+  const regularEv = resolvedEnergy(facts, levels[0], levels[levels.length - 1]);
+  const quiet = { workers: run.workers, signal: run.signal };
+  const survey = await runTasks({ kind: "survey", job, regularEv }, tasks, quiet);
+  const wish = { accuracy: options.accuracy, samples: options.samples ?? defaultSamples(facts.points) };
+  const refined = planRefinement(job, facts, regularEv, survey, wish);
+  const main = await runTasks({ kind: "refine", job: refined }, tasks, run);
+  return { sections: { ...survey, ...main }, refined };
+}
+
 /** Computes a sweep. The result does not depend on the number of workers. */
 export async function sweep(directory: string, options: SweepOptions, run: RunOptions): Promise<CurvesResult> {
   const planned = planSweep(directory, options);
-  const sections = await runTasks({ kind: "mesh", job: planned.job }, cutTasks(planned.facts.points), run);
-  return assembleResult(planned, sections);
+  return assembleResult(planned, await compute(planned, run));
 }
 
 function spectraFacts({ job, facts }: SweepPlan): SpectraFacts {
@@ -95,21 +122,29 @@ function spectraFacts({ job, facts }: SweepPlan): SpectraFacts {
   };
 }
 
-function responseCurves(planned: SweepPlan, sections: Sections, curves: ColumnCurves): ResponseCurve[] {
-  const { job, facts, options } = planned;
+/** Error bars by cause, zone means. */
+function errorCurves(planned: SweepPlan, { sections, refined }: Computed): RefinedErrors {
   const known = spectraFacts(planned);
-  const points = job.method === "points" ? curves : occupiedCurves(sections, "points", known);
-  const spread = spreadCurves(sections, job.method, known);
+  if (refined !== undefined) return refinedErrors(sections, { ...known, regularEv: refined.regularEv });
+  const sampling = spreadCurves(sections, planned.job.method, known);
+  return { sampling, model: sampling.map((rows) => rows.map((row) => new Float64Array(row.length))) };
+}
+
+function responseCurves(planned: SweepPlan, computed: Computed, curves: ColumnCurves): ResponseCurve[] {
+  const { job, facts, options } = planned;
+  const points = job.method === "points" ? curves : occupiedCurves(computed.sections, "points", spectraFacts(planned));
+  const errors = errorCurves(planned, computed);
   return job.plan.columns.map(({ name, carrier }, column): ResponseCurve => {
     const { unit, factor } = unitOf(carrier, facts, options);
-    const sampling = columnTable(spread, column, Math.abs(factor));
+    const sampling = columnTable(errors.sampling, column, Math.abs(factor));
+    const model = columnTable(errors.model, column, Math.abs(factor));
     return {
       name,
       unit,
       value: columnTable(curves, column, factor),
-      error: sampling,
+      error: sampling.map((row, t) => row.map((value, level) => Math.hypot(value, model[t][level]))),
       error_sampling: sampling,
-      error_model: sampling.map((row) => row.map(() => 0)),
+      error_model: model,
       points: columnTable(points, column, factor),
     };
   });
@@ -148,8 +183,30 @@ function notesOf({ job, facts, reference, options }: SweepPlan): string[] {
   return notes;
 }
 
-function assembleResult(planned: SweepPlan, sections: Sections): CurvesResult {
+/** Samples, cells and depths of a refinement. */
+function samplingOf({ job, facts }: SweepPlan, { sections, refined }: Computed): CurvesResult["sampling"] {
+  const { points } = facts;
+  if (refined === undefined) return { method: job.method, stored: points, samples: points, deepest: 0 };
+  const tally = sections["refine.counters"];
+  const coarse = sections["coarse.counters"];
+  const spent = tally[counters.samples] + tally[counters.defectSamples];
+  const forError = coarse === undefined ? 0 : coarse[counters.samples] + coarse[counters.defectSamples];
+  return {
+    method: "refine",
+    stored: points,
+    samples: spent + forError,
+    deepest: tally.subarray(counters.depths).findLastIndex((cells) => cells > 0),
+    samples_for_error: forError,
+    cells_split: tally[counters.splitCells],
+    zone_refined: tally[counters.splitCells] / points,
+    unresolved: tally[counters.unresolved],
+    regular_eV: refined.regularEv,
+  };
+}
+
+function assembleResult(planned: SweepPlan, computed: Computed): CurvesResult {
   const { job, facts, reference, options } = planned;
+  const { sections } = computed;
   const known = spectraFacts(planned);
   const curves = occupiedCurves(sections, job.method, known);
   const levels = Array.from(job.axis.levelsEv, (_, i) =>
@@ -172,8 +229,8 @@ function assembleResult(planned: SweepPlan, sections: Sections): CurvesResult {
     doping_density: doping.map((row) => row.map((value) => value * density)),
     doping_density_unit: periodic === 3 ? "per_cm3" : "per_cm2",
     states_per_eV: densityOfStates(sections, job.method, known),
-    responses: responseCurves(planned, sections, curves),
-    sampling: { method: job.method, stored: points, samples: points, deepest: 0 },
+    responses: responseCurves(planned, computed, curves),
+    sampling: samplingOf(planned, computed),
     notes: notesOf(planned),
   };
 }

@@ -1,13 +1,13 @@
 // inspect.ts: `tidegauge inspect`: what band grids hold and whether they can be trusted, as text or JSON.
-import { mkdirSync } from "node:fs";
-import { join } from "node:path";
 import type { Command } from "commander";
-import { writeAtomically } from "../../base/atomic.js";
-import { exitStatus } from "../../base/errors.js";
+import { dataFault } from "../../base/errors.js";
+import { cleanLine } from "../../report/clean.js";
 import { inspectText } from "../../report/inspect-text.js";
 import { resultJson } from "../../report/json.js";
 import { inspect, inspectOptions } from "../../studies/inspect.js";
+import type { InspectResult } from "../../studies/inspect-result.js";
 import type { Context, GlobalOptions } from "../context.js";
+import { checkedOut, deliverFiles } from "../delivery.js";
 import { namedGrids } from "../grids.js";
 import { validated } from "../validated.js";
 
@@ -20,8 +20,8 @@ Examples:
   tidegauge inspect gold --json | jq '.grids[0].contents.level'
       the same as JSON
 
-Exit status 3 when a grid has a hard fault: a file or field that does not fit, a number that is not finite, energies that do not
-ascend, a matrix that is not Hermitian. Notes are no faults.`;
+Exit status 3, and no file in --out, when a grid has a hard fault: a file or field that does not fit, a number that is not finite,
+energies that do not ascend, a matrix that is not Hermitian. Notes are no faults.`;
 
 /** Adds the command to the program. */
 export function register(program: Command, context: Context): void {
@@ -33,21 +33,28 @@ export function register(program: Command, context: Context): void {
     .addHelpText("after", examples);
   command.action((names: string[]) => {
     const options = validated(inspectOptions, command.opts(), "inspect");
-    const { json, out } = command.optsWithGlobals<GlobalOptions>();
+    const globals = command.optsWithGlobals<GlobalOptions>();
+    const out = checkedOut(globals);
     const progress = context.progress("reading");
     try {
       const result = inspect(namedGrids(names), options, (_directory, done, total) => progress.advance(done, total));
       progress.end();
-      if (json) context.terminal.printJson(result);
+      if (globals.json) context.terminal.printJson(result);
       else context.terminal.print(inspectText(result, Math.max(80, context.terminal.columns)));
-      if (out !== undefined) {
-        mkdirSync(out, { recursive: true });
-        writeAtomically(join(out, "inspect.json"), resultJson(result));
-        context.terminal.note(`wrote inspect.json to ${out}`);
-      }
-      if (result.grids.some((grid) => !grid.sound)) context.status = exitStatus.data;
+      refuseUnsound(result);
+      deliverFiles(out, [["inspect.json", resultJson(result)]], context.terminal);
     } finally {
       progress.end();
     }
   });
+}
+
+/** Throws the first fault as a data Fault; the result, which has been printed, holds all of them. */
+function refuseUnsound({ grids }: InspectResult): void {
+  const unsound = grids.filter((grid) => !grid.sound);
+  const [first] = unsound;
+  if (first === undefined) return;
+  const others = unsound.reduce((sum, grid) => sum + grid.faults_total, -1);
+  const more = others === 0 ? "" : ` (and ${others} more, see the result)`;
+  throw dataFault(`${cleanLine(first.directory)}: ${first.faults[0].message}${more}`, first.faults[0].cure);
 }

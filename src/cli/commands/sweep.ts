@@ -1,10 +1,7 @@
 // sweep.ts: `tidegauge sweep`: the responses of one grid against level and temperature, as text, CSV, JSON and a picture.
-import { mkdirSync } from "node:fs";
 import { availableParallelism } from "node:os";
-import { join } from "node:path";
 import type { Command } from "commander";
 import { z } from "zod";
-import { writeAtomically } from "../../base/atomic.js";
 import type { CurvesResult } from "../../curves/result.js";
 import { curvesCsv } from "../../report/csv.js";
 import { curvesJson } from "../../report/json.js";
@@ -12,8 +9,9 @@ import { curvesSvg } from "../../report/svg/curves.js";
 import { curvesText } from "../../report/text.js";
 import { sweep, sweepOptions } from "../../studies/sweep.js";
 import type { Context, GlobalOptions } from "../context.js";
+import { checkedOut, deliverFiles, type ResultFile } from "../delivery.js";
 import { readJob } from "../jobfile.js";
-import { typedNumber, typedWhole, validated } from "../validated.js";
+import { typedNumber, typedShare, typedWhole, validated } from "../validated.js";
 
 const examples = `
 Examples:
@@ -38,6 +36,8 @@ const typedOptions = z.object({
   points: typedWhole(1).optional(),
   temperature: z.array(typedNumber()).optional(),
   method: z.string().optional(),
+  accuracy: typedShare.optional(),
+  samples: typedWhole(1000).optional(),
   degenerate: typedNumber().optional(),
   broaden: typedNumber().optional(),
   unit: z.string().optional(),
@@ -56,7 +56,12 @@ export function register(program: Command, context: Context): void {
     .option("--to <EV>", "highest level (default 1)")
     .option("--points <N>", "number of levels (default 201)")
     .option("--temperature <K...>", "temperatures in kelvin (default 0 300)")
-    .option("--method <NAME>", "cells: bands linear inside each mesh cell (default); points: the plain mesh sum")
+    .option(
+      "--method <NAME>",
+      "refine: local models inside adaptively split cells (default); cells: bands linear inside each cell; points: the plain mesh sum",
+    )
+    .option("--accuracy <SHARE>", "what refine aims at, in parts of each response's largest value (default 1%)")
+    .option("--samples <N>", "about how many samples refine may spend (default 1,000,000 and 30 per stored point)")
     .option("--degenerate <EV>", "pairs of bands closer than this are taken as degenerate (default 1e-5)")
     .option("--broaden <EV>", "eta in 1/((E_n - E_m)^2 + eta^2) (default 0)")
     .option(
@@ -70,6 +75,8 @@ export function register(program: Command, context: Context): void {
     const { job, workers, ...typed } = validated(typedOptions, command.opts(), "sweep");
     const given = Object.fromEntries(Object.entries(typed).filter(([, value]) => value !== undefined));
     const options = validated(sweepOptions, { ...(job === undefined ? {} : readJob(job, "sweep")), ...given }, "sweep");
+    const globals = command.optsWithGlobals<GlobalOptions>();
+    checkedOut(globals);
     const progress = context.progress("summing over the zone");
     try {
       const result = await sweep(directory, options, {
@@ -78,7 +85,7 @@ export function register(program: Command, context: Context): void {
         signal: context.interruption(),
       });
       progress.end();
-      deliver(result, command.optsWithGlobals<GlobalOptions>(), context);
+      deliver(result, globals, context);
     } finally {
       progress.end();
     }
@@ -88,13 +95,10 @@ export function register(program: Command, context: Context): void {
 function deliver(result: CurvesResult, globals: GlobalOptions, { terminal }: Context): void {
   if (globals.json) terminal.printJson(result);
   else terminal.print(curvesText(result, { width: Math.max(80, terminal.columns) }));
-  if (globals.out === undefined) return;
-  mkdirSync(globals.out, { recursive: true });
-  const files: [string, string][] = [
+  const files: ResultFile[] = [
     ["curves.csv", curvesCsv(result)],
     ["curves.json", curvesJson(result)],
     ["curves.svg", curvesSvg(result)],
   ];
-  for (const [name, text] of files) writeAtomically(join(globals.out, name), text);
-  terminal.note(`wrote ${files.map(([name]) => name).join(", ")} to ${globals.out}`);
+  deliverFiles(globals.out, files, terminal);
 }

@@ -1,0 +1,103 @@
+// refined.ts: error bars of a refined sweep: what sampling left undecided, and what the local models got wrong.
+import { boltzmannEvPerK } from "../base/constants.js";
+import { coarseNodes, indicatorNodes, type LevelAxis, type NodeAxis } from "../spectrum/axis.js";
+import type { Sections } from "../spectrum/sections.js";
+import type { ColumnCurves, SpectraFacts } from "./assemble.js";
+import { type CurveSampler, occupiedWeight } from "./occupation.js";
+
+/** The local models' error falls like this power of the mesh step once the neighbours have corrected it. */
+const modelOrder = 4;
+/** Where no sub-mesh shows how the error falls: the part of the neighbour defect that may remain. */
+const remainingDefect = 0.1;
+/** Never claim to know the defect itself better than this. */
+const leastDefect = 0.01;
+/** Levels over which an error is averaged: a difference that passes through zero does not mean certainty. */
+const neighbouringLevels = 9;
+
+/** What the refinement left behind, besides its sections. */
+export interface RefinedFacts extends SpectraFacts {
+  /** Energy that the mesh resolves, eV; see engine/mesh-step. */
+  readonly regularEv: number;
+}
+
+/** Standard error bars by cause, zone means: [temperature][level][column]. */
+export interface RefinedErrors {
+  readonly sampling: ColumnCurves;
+  readonly model: ColumnCurves;
+}
+
+type Squares = (levelEv: number, temperatureK: number, out: Float64Array) => void;
+
+/** Root mean square of a quantity's square over levels within `halfWidthEv`. */
+function averaged(squares: Squares, columns: number, axis: LevelAxis, halfWidthEv: (temperatureK: number) => number): ColumnCurves {
+  const { startEv, stepEv, count } = axis.nodes;
+  const [low, high] = [startEv, startEv + (count - 1) * stepEv];
+  const out = new Float64Array(columns);
+  return axis.temperaturesK.map((temperatureK) =>
+    Array.from(axis.levelsEv, (levelEv) => {
+      const mean = new Float64Array(columns);
+      for (let i = 0; i < neighbouringLevels; i++) {
+        const offset = ((2 * i) / (neighbouringLevels - 1) - 1) * halfWidthEv(temperatureK);
+        squares(Math.min(high, Math.max(low, levelEv + offset)), temperatureK, out);
+        for (let c = 0; c < columns; c++) mean[c] += out[c] / neighbouringLevels;
+      }
+      return mean.map(Math.sqrt);
+    }),
+  );
+}
+
+/** Families that were let pass disagree by amounts of random sign: the root of the sum of their squares. */
+function samplingSquares(sections: Sections, axis: NodeAxis, columns: number): Squares {
+  const squares = sections["refine.square"];
+  return (levelEv, _temperatureK, out) => {
+    const position = Math.min(axis.count - 1.001, Math.max(0, (levelEv - axis.startEv) / axis.stepEv));
+    const node = Math.floor(position);
+    const part = position - node;
+    for (let c = 0; c < columns; c++)
+      out[c] = (1 - part) * squares[node * columns + c] + part * squares[(node + 1) * columns + c];
+  };
+}
+
+function samplerOf(sections: Sections, name: string, axis: NodeAxis, columns: number): CurveSampler {
+  return occupiedWeight({ axis, columns, base: sections[`${name}.base`], nodes: sections[`${name}.nodes`] });
+}
+
+/**
+ * What the models got wrong and the neighbours did not mend: the difference to the same calculation on a contained mesh of
+ * `stride` times the step, scaled by stride^-4; without such a mesh a part of the neighbour defect.
+ */
+function modelSquares(sections: Sections, facts: RefinedFacts): Squares {
+  const { axis, columns, points, subMeshes } = facts;
+  const nodes = coarseNodes(axis);
+  const defect = samplerOf(sections, "refine.defect", nodes, columns);
+  const wrong = new Float64Array(columns);
+  if (subMeshes === undefined)
+    return (levelEv, temperatureK, out) => {
+      defect(levelEv, temperatureK, wrong);
+      for (let c = 0; c < columns; c++) out[c] = ((remainingDefect * wrong[c]) / points) ** 2;
+    };
+  const fine = samplerOf(sections, "refine", axis.nodes, columns);
+  const coarse = samplerOf(sections, "coarse", nodes, columns);
+  const ofFine = new Float64Array(columns);
+  const ofCoarse = new Float64Array(columns);
+  const scale = 1 / (subMeshes.stride ** modelOrder - 1);
+  return (levelEv, temperatureK, out) => {
+    fine(levelEv, temperatureK, ofFine);
+    coarse(levelEv, temperatureK, ofCoarse);
+    defect(levelEv, temperatureK, wrong);
+    for (let c = 0; c < columns; c++) {
+      const difference = ofFine[c] / points - (ofCoarse[c] * subMeshes.count) / points;
+      out[c] = (scale * difference) ** 2 + ((leastDefect * wrong[c]) / points) ** 2;
+    }
+  };
+}
+
+/** Error bars of all columns. */
+export function refinedErrors(sections: Sections, facts: RefinedFacts): RefinedErrors {
+  const { axis, columns } = facts;
+  const warmth = (temperatureK: number): number => 2 * boltzmannEvPerK * temperatureK;
+  return {
+    sampling: averaged(samplingSquares(sections, indicatorNodes(axis), columns), columns, axis, warmth),
+    model: averaged(modelSquares(sections, facts), columns, axis, (t) => Math.max(facts.regularEv / 2, warmth(t))),
+  };
+}

@@ -1,0 +1,81 @@
+// local-sampler.ts: the local model of one stored point as samples of the columns that are kept.
+import type { GridFacts, Triple } from "../grid/grid.js";
+import type { PointRef } from "../kernel/kernel.js";
+import { createLocalModel } from "../kernel/local.js";
+import type { Sample } from "../refine/tree.js";
+import { columnCount, fillColumns } from "./columns.js";
+import type { RefineJob } from "./job.js";
+
+/** What the local model says at one place: energies and slopes of every band, and its columns. */
+export interface BandSample extends Sample {
+  readonly energyEv: Float64Array;
+  /** [band * 3 + direction], eV angstrom. */
+  readonly slopes: Float64Array;
+  /** [band * columns + column] */
+  readonly values: Float64Array;
+}
+
+/** A sample to be filled. */
+export const newSample = (facts: GridFacts, columns: number): BandSample => ({
+  t: new Float64Array(facts.periodic),
+  energyEv: new Float64Array(facts.bands),
+  slopes: new Float64Array(3 * facts.bands),
+  values: new Float64Array(facts.bands * columns),
+});
+
+/** Gives the bands of a degenerate set their mean slope, which unlike their own does not depend on the set's arbitrary basis. */
+export function averageSlopes(energyEv: Float64Array, slopes: Float64Array, degenerateEv: number): void {
+  for (let first = 0, end = 1; first < energyEv.length; first = end++) {
+    while (end < energyEv.length && energyEv[end] - energyEv[end - 1] < degenerateEv) end++;
+    if (end - first === 1) continue;
+    for (let a = 0; a < 3; a++) {
+      let sum = 0;
+      for (let n = first; n < end; n++) sum += slopes[3 * n + a];
+      for (let n = first; n < end; n++) slopes[3 * n + a] = sum / (end - first);
+    }
+  }
+}
+
+export interface LocalSampler {
+  load(point: PointRef): void;
+  /** Fills the sample at its t (in the given edges), with the denominators of the job. */
+  evaluate(sample: BandSample, edges: readonly Triple[]): void;
+  /** The same with regularised denominators. */
+  evaluateRegular(sample: BandSample, edges: readonly Triple[]): void;
+}
+
+/** A sampler for one grid and job; allocates nothing per sample. */
+export function createLocalSampler(job: RefineJob, facts: GridFacts): LocalSampler {
+  const { bands } = facts;
+  const { products } = job.plan;
+  const columns = columnCount(job.plan);
+  const regular = { degenerateEv: 0, broadenEv: Math.hypot(job.regularEv, job.denominator.broadenEv) };
+  const model = createLocalModel({
+    bands,
+    hessian: facts.hessian,
+    directions: facts.periodic === 3 ? [0, 1, 2] : [0, 1],
+    products,
+    denominators: [job.denominator, regular],
+  });
+  const curvature = new Float64Array(2 * products.length * bands);
+  const regularised = curvature.subarray(products.length * bands);
+  const q = new Float64Array(3);
+  const row = new Float64Array(columns);
+  const fill = (sample: BandSample, edges: readonly Triple[], source: Float64Array): void => {
+    q.fill(0);
+    for (let j = 0; j < edges.length; j++) for (let a = 0; a < 3; a++) q[a] += sample.t[j] * edges[j][a];
+    model.evaluate(q[0], q[1], q[2], curvature);
+    sample.energyEv.set(model.energyEv);
+    sample.slopes.set(model.slopes);
+    averageSlopes(sample.energyEv, sample.slopes, job.denominator.degenerateEv);
+    for (let band = 0; band < bands; band++) {
+      fillColumns(job.plan, source, bands, band, row);
+      sample.values.set(row, band * columns);
+    }
+  };
+  return {
+    load: (point) => model.load(point),
+    evaluate: (sample, edges) => fill(sample, edges, curvature),
+    evaluateRegular: (sample, edges) => fill(sample, edges, regularised),
+  };
+}

@@ -1,0 +1,190 @@
+// refiner.ts: refines the cell of one stored point after another, and corrects its model against the neighbours.
+import { boltzmannEvPerK } from "../base/constants.js";
+import type { GridFacts, Triple } from "../grid/grid.js";
+import { type Closeness, mayTouch } from "../refine/gaps.js";
+import { createSpectralNorm, type SpectralNorm } from "../refine/indicator.js";
+import { createTree, type Family } from "../refine/tree.js";
+import { coarseNodes, indicatorNodes, type NodeAxis } from "../spectrum/axis.js";
+import type { Sections } from "../spectrum/sections.js";
+import { type BoxSpectrum, createBoxSpectrum } from "./box-spectrum.js";
+import { columnCount } from "./columns.js";
+import type { RefineJob } from "./job.js";
+import { type BandSample, type LocalSampler, newSample } from "./local-sampler.js";
+import { spanWidths } from "./pass.js";
+
+/** Depths that are counted apart. */
+export const depthsCounted = 24;
+/** Places in the counters section. */
+export const counters = { samples: 0, defectSamples: 1, splitCells: 2, unresolved: 3, depths: 4 } as const;
+
+/** Weights of Richardson's extrapolation of a family: parent and children err like the square of their size. */
+const childShare = 4 / 3;
+const parentShare = -1 / 3;
+
+/** The defect is spread over boxes of half a cell and of a whole one, in the mixture that adds no variance to the energies. */
+const defectSpread: readonly (readonly [size: number, share: number])[] = [
+  [0.5, 4 / 3],
+  [1, -1 / 3],
+];
+
+/** One mesh to refine: the stored one, or a contained sub-mesh that shows how the model's error falls with the mesh step. */
+export interface RefinerPlan {
+  readonly job: RefineJob;
+  readonly facts: GridFacts;
+  /** Edges of its cells, 1/angstrom. */
+  readonly edges: readonly Triple[];
+  /** Number of its points. */
+  readonly points: number;
+  /** A family is halved further above this part of the tolerance. */
+  readonly splitAbove: number;
+  /** Where its main spectrum is kept. */
+  readonly axis: NodeAxis;
+  readonly sampler: LocalSampler;
+}
+
+export interface Refiner {
+  /** Refines the cell of a point that the sampler has just loaded. */
+  refine(): void;
+  /** Hands over spectra and counters under `name.`. */
+  finish(into: Sections, name: string): void;
+}
+
+/** A refiner of one mesh. */
+export function createRefiner(plan: RefinerPlan): Refiner {
+  const { job, facts, edges, sampler } = plan;
+  const columns = columnCount(job.plan);
+  const main = createBoxSpectrum(plan.axis, columns, edges);
+  const defect = createBoxSpectrum(coarseNodes(job.axis), columns, edges);
+  const judge = createJudge(plan);
+  const tally = new Float64Array(counters.depths + depthsCounted);
+  const tree = createTree<BandSample>({
+    dimension: facts.periodic,
+    depthLimit: job.depthLimit,
+    create: () => newSample(facts, columns),
+    evaluate: (sample) => sampler.evaluate(sample, edges),
+    disagrees: judge.disagrees,
+    accept: (family, resolved) => {
+      judge.accept();
+      depositFamily(family, resolved, facts.periodic, main);
+    },
+  });
+  const root = newSample(facts, columns);
+  const other = newSample(facts, columns);
+  const steps = neighbourSteps(facts.periodic);
+  const addDefect = (sample: BandSample, weight: number): void => {
+    for (const [size, share] of defectSpread) {
+      main.add(sample, size, weight * share);
+      defect.add(sample, size, weight * share);
+    }
+  };
+  return {
+    refine() {
+      root.t.fill(0);
+      sampler.evaluate(root, edges);
+      const cost = tree(root, job.samplesPerCell);
+      tally[counters.samples] += cost.samples;
+      tally[counters.unresolved] += cost.unresolved;
+      if (cost.deepest > 1) tally[counters.splitCells]++;
+      tally[counters.depths + Math.min(cost.deepest, depthsCounted - 1)]++;
+      // (1/24) sum over cells and neighbours of (stored truth - model's guess): each stored point is the neighbour of 2d cells.
+      sampler.evaluateRegular(root, edges);
+      addDefect(root, steps.length / 24);
+      for (const t of steps) {
+        other.t.set(t);
+        sampler.evaluateRegular(other, edges);
+        addDefect(other, -1 / 24);
+      }
+      tally[counters.defectSamples] += steps.length;
+    },
+    finish(into, name) {
+      main.finish(into, name);
+      defect.finish(into, `${name}.defect`);
+      into[`${name}.square`] = judge.squares;
+      into[`${name}.counters`] = tally;
+    },
+  };
+}
+
+/** The 2d neighbours along the edges. */
+function neighbourSteps(dimension: number): Float64Array[] {
+  return Array.from({ length: 2 * dimension }, (_, i) => {
+    const t = new Float64Array(dimension);
+    t[i >> 1] = i % 2 === 0 ? 1 : -1;
+    return t;
+  });
+}
+
+function depositFamily(family: Family<BandSample>, resolved: boolean, dimension: number, main: BoxSpectrum): void {
+  const { parent, children, depth } = family;
+  const size = 2 ** -depth;
+  const volume = size ** dimension;
+  for (const child of children) main.add(child, size / 2, (volume / children.length) * (resolved ? childShare : 1));
+  if (resolved) main.add(parent, size, volume * parentShare);
+}
+
+/** Decides on families, and keeps the squares of what was let pass. */
+function createJudge({ job, facts, edges, points, splitAbove }: RefinerPlan) {
+  const columns = columnCount(job.plan);
+  const nodes = indicatorNodes(job.axis);
+  const norm = windowNorm(job, nodes);
+  const widths = new Float64Array(edges.length);
+  const closeness = windowCloseness(job, facts, points, edges);
+  const put = ({ energyEv, slopes, values }: BandSample, size: number, weight: number): void => {
+    for (let band = 0; band < facts.bands; band++) {
+      spanWidths(slopes, band, edges, widths);
+      for (let j = 0; j < widths.length; j++) widths[j] *= size;
+      norm.add(energyEv[band], widths, weight, values, band * columns);
+    }
+  };
+  return {
+    squares: norm.squares,
+    accept: norm.keepSquares,
+    disagrees({ parent, children, depth }: Family<BandSample>): boolean {
+      const size = 2 ** -depth;
+      const volume = size ** facts.periodic / points;
+      put(parent, size, -volume);
+      for (const child of children) put(child, size / 2, volume / children.length);
+      if (norm.take() > splitAbove) return true;
+      return children.some((child) => mayTouch(child.energyEv, child.slopes, edges, size / 2, closeness));
+    },
+  };
+}
+
+/** Families are compared at the asked levels, and a few kT beyond at the highest temperature. */
+function windowNorm(job: RefineJob, nodes: NodeAxis): SpectralNorm {
+  const { levelsEv, temperaturesK } = job.axis;
+  const reach = 3 * Math.max(...temperaturesK) * boltzmannEvPerK + nodes.stepEv;
+  const at = (energyEv: number): number =>
+    Math.min(nodes.count - 1, Math.max(0, Math.round((energyEv - nodes.startEv) / nodes.stepEv)));
+  return createSpectralNorm(
+    nodes,
+    Float64Array.from(job.tolerance),
+    at(levelsEv[0] - reach),
+    at(levelsEv[levelsEv.length - 1] + reach),
+  );
+}
+
+/** What two bands that touch unseen could contribute: the flux pi of a Dirac point for a moment 1/2, in the zone's mean. */
+function windowCloseness(job: RefineJob, facts: GridFacts, points: number, edges: readonly Triple[]): Closeness {
+  const { levelsEv, temperaturesK, nodes } = job.axis;
+  const { degenerateEv } = job.denominator;
+  const responses = job.tolerance.slice(0, -1);
+  return {
+    fromEv: levelsEv[0] - 2 * boltzmannEvPerK * Math.max(...temperaturesK),
+    toEv: levelsEv[levelsEv.length - 1] + 2 * boltzmannEvPerK * Math.max(...temperaturesK),
+    degenerateEv,
+    blurEv: 4 * boltzmannEvPerK * Math.min(...temperaturesK) + 2 * nodes.stepEv,
+    strictness: zoneFlux(facts.periodic, points, edges) / Math.max(Math.min(...responses), Number.MIN_VALUE),
+    dimension: facts.periodic,
+  };
+}
+
+/** Zone mean of a curvature whose flux through a layer (or through a sheet one cell edge long) is pi / 2. */
+function zoneFlux(dimension: 2 | 3, points: number, edges: readonly Triple[]): number {
+  const [a, b] = edges;
+  const normal = [a[1] * b[2] - a[2] * b[1], a[2] * b[0] - a[0] * b[2], a[0] * b[1] - a[1] * b[0]];
+  if (dimension === 2) return Math.PI / 2 / (points * Math.hypot(...normal));
+  const c = edges[2];
+  const cell = Math.abs(normal[0] * c[0] + normal[1] * c[1] + normal[2] * c[2]);
+  return ((Math.PI / 2) * cell ** (1 / 3)) / (points * cell);
+}

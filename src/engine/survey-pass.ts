@@ -1,0 +1,79 @@
+// survey-pass.ts: the first of the two passes of a refined sweep: the plain mesh sum, and how large each response is at all.
+import { createPairPass } from "../kernel/pair.js";
+import { coarseNodes, type LevelAxis } from "../spectrum/axis.js";
+import type { Sections } from "../spectrum/sections.js";
+import { cellEdges } from "../zone/mesh.js";
+import { walkPoints } from "./blocks.js";
+import { createBoxSpectrum } from "./box-spectrum.js";
+import { columnCount, fillColumns } from "./columns.js";
+import type { SweepJob, Task } from "./job.js";
+import { averageSlopes, newSample } from "./local-sampler.js";
+import { readerFor } from "./pass.js";
+import { createPointTally } from "./tally.js";
+
+/** Levels at which the size without cancellation between k points is taken. */
+const sizeLevels = 16;
+
+/** Those levels, absolute. */
+export function levelsForSize(axis: LevelAxis): number[] {
+  const [first, last] = [axis.levelsEv[0], axis.levelsEv[axis.levelsEv.length - 1]];
+  return Array.from({ length: sizeLevels }, (_, i) => first + ((last - first) * (i + 0.5)) / sizeLevels);
+}
+
+/**
+ * Sections `points.` (plain denominators), `regular.` (denominators regularised by `regularEv`: free of the noise of
+ * near-degeneracies) and `size` [level][column]: sums over k of the magnitude of what one k point contributes.
+ */
+export function surveyPass(job: SweepJob, regularEv: number, task: Task): Sections {
+  const reader = readerFor(job, false);
+  const { facts } = reader;
+  const { bands } = facts;
+  const columns = columnCount(job.plan);
+  const edges = cellEdges(facts);
+  const { broadenEv } = job.denominator;
+  const plain = createPairPass(bands, job.plan.products, job.denominator);
+  const smooth = createPairPass(bands, job.plan.products, { degenerateEv: 0, broadenEv: Math.hypot(regularEv, broadenEv) });
+  const points = createPointTally(job.axis, columns, 0);
+  const regular = createBoxSpectrum(coarseNodes(job.axis), columns, edges);
+  const sample = newSample(facts, columns);
+  const curvature = new Float64Array(job.plan.products.length * bands);
+  const row = new Float64Array(columns);
+  const none = new Float64Array(0);
+  const levels = levelsForSize(job.axis);
+  const size = new Float64Array(levels.length * columns);
+  walkPoints(reader, task, job.plan.moments, (_flat, point) => {
+    const energies = point.energyEv.subarray(point.energyOffset, point.energyOffset + bands);
+    plain.run(point, curvature);
+    for (let band = 0; band < bands; band++) {
+      fillColumns(job.plan, curvature, bands, band, row);
+      points.add(energies[band], none, row, 0);
+    }
+    smooth.run(point, curvature);
+    smooth.slopes(point, sample.slopes);
+    sample.energyEv.set(energies);
+    averageSlopes(sample.energyEv, sample.slopes, job.denominator.degenerateEv);
+    for (let band = 0; band < bands; band++) {
+      fillColumns(job.plan, curvature, bands, band, row);
+      sample.values.set(row, band * columns);
+    }
+    regular.add(sample, 1, 1);
+    addMagnitudes(energies, sample.values, levels, columns, size);
+  });
+  reader.close();
+  const sections: Sections = { size };
+  points.finish(sections, "points");
+  regular.finish(sections, "regular");
+  return sections;
+}
+
+/** size[level][column] += |sum over the bands below the level|. */
+function addMagnitudes(energies: Float64Array, values: Float64Array, levels: readonly number[], columns: number, size: Float64Array): void {
+  for (let c = 0; c < columns; c++) {
+    let band = 0;
+    let sum = 0;
+    for (const [i, level] of levels.entries()) {
+      for (; band < energies.length && energies[band] <= level; band++) sum += values[band * columns + c];
+      size[i * columns + c] += Math.abs(sum);
+    }
+  }
+}
