@@ -1,5 +1,5 @@
 // delivery.ts: where do the files of a result go, and can they go there at all? Asked before anything is computed.
-import { accessSync, constants, mkdirSync, statSync } from "node:fs";
+import { accessSync, constants, existsSync, mkdirSync, statSync } from "node:fs";
 import { dirname, join, resolve } from "node:path";
 import { writeAtomically } from "../base/atomic.js";
 import { usageFault } from "../base/errors.js";
@@ -19,12 +19,8 @@ export function checkedOut({ out }: GlobalOptions): string | undefined {
   if (out === undefined) return undefined;
   if (out === "") throw usageFault("--out is empty", cure);
   let standing = resolve(out);
-  let found = statSync(standing, { throwIfNoEntry: false });
-  while (found === undefined && dirname(standing) !== standing) {
-    standing = dirname(standing);
-    found = statSync(standing, { throwIfNoEntry: false });
-  }
-  if (found?.isDirectory() !== true) throw usageFault(`--out ${out}: ${standing} is not a directory`, cure);
+  while (!existsSync(standing) && dirname(standing) !== standing) standing = dirname(standing);
+  if (!statSync(standing).isDirectory()) throw usageFault(`--out ${out}: ${standing} is not a directory`, cure);
   try {
     accessSync(standing, constants.W_OK | constants.X_OK);
   } catch {
