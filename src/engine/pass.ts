@@ -1,11 +1,11 @@
 // pass.ts: one task of a sweep with the methods `points` and `cells`: stored points -> spectra.
-import { openReader } from "../grid/reader.js";
 import type { BlockReader, GridFacts, Triple } from "../grid/grid.js";
 import { openGrid } from "../grid/open.js";
+import { openReader } from "../grid/reader.js";
 import type { MatrixRef, PointRef } from "../kernel/kernel.js";
 import { createPairPass } from "../kernel/pair.js";
 import type { Sections } from "../spectrum/sections.js";
-import { cellEdges, smallestSubMeshes, subMeshOf } from "../zone/mesh.js";
+import { cellEdges, spreadSubMeshes, subMeshOf } from "../zone/mesh.js";
 import { walkPoints } from "./blocks.js";
 import { columnCount, fillColumns } from "./columns.js";
 import type { SweepJob, Task } from "./job.js";
@@ -60,7 +60,7 @@ const usedDirections = (job: SweepJob): number[] =>
 
 function tallies(job: SweepJob, facts: GridFacts): [string, Tally][] {
   const columns = columnCount(job.plan);
-  const subMeshes = smallestSubMeshes(facts)?.count ?? 0;
+  const subMeshes = spreadSubMeshes(facts)?.count ?? 0;
   const points: [string, Tally] = ["points", createPointTally(job.axis, columns, subMeshes)];
   return job.method === "points" ? [points] : [points, ["cells", createBoxTally(job.axis, columns, subMeshes)]];
 }
@@ -72,7 +72,7 @@ export function meshPass(job: SweepJob, task: Task): Sections {
   const { bands } = facts;
   const pass = createPairPass(bands, job.plan.products, job.denominator);
   const kept = tallies(job, facts);
-  const sub = smallestSubMeshes(facts);
+  const sub = spreadSubMeshes(facts);
   const edges = cellEdges(facts);
   const curvature = new Float64Array(job.plan.products.length * bands);
   const widths = new Float64Array(edges.length);

@@ -25,7 +25,7 @@ import { openGrid } from "../grid/open.js";
 import { planAxis } from "../spectrum/axis.js";
 import type { Sections } from "../spectrum/sections.js";
 import { cellArea, cellVolume } from "../zone/lattice.js";
-import { smallestSubMeshes } from "../zone/mesh.js";
+import { smallestSubMeshes, spreadSubMeshes } from "../zone/mesh.js";
 
 /** Options of a sweep; the same object is what a job file holds and what every result embeds. */
 export const sweepOptions = z.strictObject({
@@ -118,7 +118,7 @@ function spectraFacts({ job, facts }: SweepPlan): SpectraFacts {
     points: facts.points,
     electronsPerBand: facts.electronsPerBand,
     dimension: facts.periodic,
-    subMeshes: smallestSubMeshes(facts),
+    subMeshes: job.method === "refine" ? smallestSubMeshes(facts) : spreadSubMeshes(facts),
   };
 }
 

@@ -46,6 +46,20 @@ export function smallestSubMeshes(mesh: MeshFacts): SubMeshes | undefined {
   return stride === undefined ? undefined : { stride, count: stride ** active.length };
 }
 
+/**
+ * Sub-meshes whose spread tells an error: smallestSubMeshes, but not of stride 2 on a mesh that is moved by half a step. There the
+ * two halves of a direction lie at +-1/4 of their own step, so that the mirrors of a crystal carry every sub-mesh into every other: their sums
+ * are equal, whatever the error. Strides 3, 4 and 5 are tried instead; where only 2 divides the mesh, it is kept.
+ */
+export function spreadSubMeshes(mesh: MeshFacts): SubMeshes | undefined {
+  const smallest = smallestSubMeshes(mesh);
+  const moved = mesh.offset.slice(0, mesh.periodic).some((x) => Math.abs(x - 0.5) < 1e-9);
+  if (smallest?.stride !== 2 || !moved) return smallest;
+  const active = mesh.divisions.slice(0, mesh.periodic);
+  const stride = [3, 4, 5].find((s) => active.every((n) => n % s === 0 && n > s));
+  return stride === undefined ? smallest : { stride, count: stride ** active.length };
+}
+
 /** Which of the sub-meshes a mesh point belongs to. */
 export function subMeshOf(flat: number, mesh: MeshFacts, sub: SubMeshes): number {
   const index = meshIndices(flat, mesh.divisions);

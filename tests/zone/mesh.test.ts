@@ -10,6 +10,7 @@ import {
   type MeshFacts,
   meshIndices,
   smallestSubMeshes,
+  spreadSubMeshes,
   subMeshOf,
 } from "../../src/zone/mesh.js";
 
@@ -105,6 +106,33 @@ describe("contained sub-meshes", () => {
     expect(strideOf([4, 6, 1], 2)).toBe(2);
     expect(smallestSubMeshes(mesh([4, 6, 1], [0, 0, 0], 2))?.count).toBe(4);
     expect(smallestSubMeshes(mesh([6, 9, 12]))?.count).toBe(27);
+  });
+
+  it("are not all mirror images of each other where their spread is to tell an error", () => {
+    const strideOf = (n: Triple, offset: Triple, periodic: 2 | 3 = 3) =>
+      spreadSubMeshes(mesh(n, offset, periodic))?.stride;
+    const half: Triple = [0.5, 0.5, 0.5];
+    expect(strideOf([24, 24, 24], [0, 0, 0])).toBe(2);
+    expect(strideOf([24, 24, 24], [0.25, 0.25, 0.25])).toBe(2);
+    expect(strideOf([24, 24, 24], half)).toBe(3);
+    expect(strideOf([24, 24, 24], [0, 0, 0.5])).toBe(3);
+    expect(strideOf([16, 32, 8], half)).toBe(4);
+    expect(strideOf([10, 20, 10], half)).toBe(5);
+    expect(strideOf([14, 22, 26], half)).toBe(2);
+    expect(strideOf([9, 9, 9], half)).toBe(3);
+    expect(strideOf([7, 7, 7], half)).toBeUndefined();
+    expect(spreadSubMeshes(mesh([200, 200, 1], [0.5, 0.5, 0], 2))).toEqual({ stride: 4, count: 16 });
+    // Offsets of the sub-meshes in their own steps: with these strides some are no mirror image of the first.
+    for (const [n, offset] of [
+      [24, 0.5],
+      [16, 0.5],
+      [10, 0.5],
+      [24, 0],
+    ]) {
+      const stride = strideOf([n, n, n], [offset, offset, offset]) as number;
+      const distances = Array.from({ length: stride }, (_, j) => (j + offset) / stride).map((x) => Math.min(x, 1 - x));
+      expect(new Set(distances.map((x) => x.toFixed(6))).size).toBeGreaterThan(1);
+    }
   });
 
   it("partition the mesh into equal cosets; two points share one when they differ by multiples of the stride", () => {
