@@ -49,4 +49,6 @@ export const typedWhole = (least: number): z.ZodType<number, unknown> => {
 export const typedShare: z.ZodType<number, unknown> = z
   .string()
   .transform((text) => (/%\s*$/.test(text) ? Number(text.replace(/%\s*$/, "")) / 100 : Number(text)))
-  .refine((value) => Number.isFinite(value) && value > 0 && value <= 1, { error: "expected a share such as 1% or 0.01" });
+  .refine((value) => Number.isFinite(value) && value > 0 && value <= 1, {
+    error: "expected a share such as 1% or 0.01",
+  });

@@ -24,6 +24,8 @@ export interface RefineJob extends SweepJob {
   readonly depthLimit: number;
   /** Samples allowed in one cell. */
   readonly samplesPerCell: number;
+  /** Only cost and spread are wanted: no contained mesh. */
+  readonly probing?: true;
 }
 
 /** A run of stored k points: the unit of work, cut by the grid alone. */

@@ -12,8 +12,8 @@ import { createRefiner } from "./refiner.js";
 /** The coarser mesh only tells an error: its cells may disagree by more. */
 const coarseLeniency = 4;
 
-/** Spectra and counters of one task, under `refine.` and, where the mesh contains a sub-mesh, `coarse.`. */
-export function refinePass(job: RefineJob, task: Task): Sections {
+/** Spectra and counters of some runs of points, under `refine.` and, where the mesh contains a sub-mesh, `coarse.`. */
+export function refinePass(job: RefineJob, tasks: readonly Task[]): Sections {
   const reader = readerFor(job, true);
   const { facts } = reader;
   const edges = cellEdges(facts);
@@ -21,7 +21,7 @@ export function refinePass(job: RefineJob, task: Task): Sections {
   const { points } = facts;
   const common = { job, facts, sampler };
   const fine = createRefiner({ ...common, edges, points, splitAbove: job.splitAbove, axis: job.axis.nodes });
-  const sub = smallestSubMeshes(facts);
+  const sub = job.probing ? undefined : smallestSubMeshes(facts);
   const coarse =
     sub &&
     createRefiner({
@@ -31,11 +31,12 @@ export function refinePass(job: RefineJob, task: Task): Sections {
       splitAbove: job.splitAbove * Math.sqrt(sub.count) * coarseLeniency,
       axis: coarseNodes(job.axis),
     });
-  walkPoints(reader, task, job.plan.moments, (flat, point) => {
-    sampler.load(point);
-    fine.refine();
-    if (sub !== undefined && subMeshOf(flat, facts, sub) === 0) coarse?.refine();
-  });
+  for (const task of tasks)
+    walkPoints(reader, task, job.plan.moments, (flat, point) => {
+      sampler.load(point);
+      fine.refine();
+      if (sub !== undefined && subMeshOf(flat, facts, sub) === 0) coarse?.refine();
+    });
   reader.close();
   const sections: Sections = {};
   fine.finish(sections, "refine");

@@ -18,8 +18,12 @@ export interface RefineWish {
 
 /** A response that vanishes by symmetry is not chased below this part of what single k points contribute to it. */
 const symmetryFloor = 0.02;
-/** Families let pass err at random: the sum over N cells of errors below s is about s sqrt(N) / 4. */
-const splitPart = 0.4;
+/** Part of the tolerated error that sampling may use up. */
+const samplingShare = 0.3;
+/** First guess: families let pass err at random, so that the sum over N cells of errors below s is about s sqrt(N). */
+const firstSplit = 1;
+const mostAttempts = 6;
+const goldenPart = (Math.sqrt(5) - 1) / 2;
 const depthLimit = 14;
 /** No cell may take more than this many times its equal share of the samples. */
 const greed = 16;
@@ -47,37 +51,44 @@ function tolerances(job: SweepJob, facts: GridFacts, survey: Sections, accuracy:
   return Array.from(largest, (value) => Math.max((accuracy * value) / facts.points, Number.MIN_VALUE));
 }
 
-/** Mean samples per cell of evenly spaced probe cells. */
-function probeCost(job: RefineJob, facts: GridFacts): number {
-  const stride = Math.max(1, Math.floor(facts.points / probes));
-  let samples = 0;
-  let cells = 0;
-  for (let first = 0; first < facts.points; first += stride, cells++) {
-    const sections = refinePass(job, { first, count: 1 });
-    samples += sections["refine.counters"][counters.samples] + sections["refine.counters"][counters.defectSamples];
-  }
-  return samples / cells;
+interface ProbeFindings {
+  /** Samples per cell. */
+  readonly cost: number;
+  /** Standard error of the whole sum from what was let pass, in parts of what is tolerated; the worst level and column. */
+  readonly spread: number;
+}
+
+/** What a few cells, spread evenly but in no step with the mesh, cost and leave undecided. */
+function probe(job: RefineJob, facts: GridFacts): ProbeFindings {
+  const count = Math.min(probes, facts.points);
+  const cells = Array.from({ length: count }, (_, i) => ({ first: Math.floor((((i + 0.5) * goldenPart) % 1) * facts.points), count: 1 }));
+  const sections = refinePass({ ...job, probing: true }, cells);
+  const tally = sections["refine.counters"];
+  const squares = sections["refine.square"];
+  const columns = job.tolerance.length;
+  let spread = 0;
+  for (const [at, square] of squares.entries())
+    spread = Math.max(spread, Math.sqrt((square * facts.points) / count) / job.tolerance[at % columns]);
+  return { cost: (tally[counters.samples] + tally[counters.defectSamples]) / count, spread };
 }
 
 /**
- * Settings of the refinement pass. Where a few probe cells show that the samples would not suffice, families may disagree by
- * more, so that the budget is spent where it matters most; the error bar then tells what was reached.
+ * Settings of the refinement pass. A few probe cells show how much families may disagree for the whole sum to be as sure as is
+ * asked; where the samples would not suffice, they may disagree by more, and the error bar tells what was reached.
  */
 export function planRefinement(job: SweepJob, facts: GridFacts, regularEv: number, survey: Sections, wish: RefineWish): RefineJob {
   const share = wish.samples / facts.points;
-  const plan = (splitAbove: number): RefineJob => ({
-    ...job,
-    regularEv,
-    tolerance: tolerances(job, facts, survey, wish.accuracy),
-    splitAbove,
-    depthLimit,
-    samplesPerCell: Math.max(8, Math.ceil(greed * share)),
-  });
-  let refined = plan(splitPart / Math.sqrt(facts.points));
-  for (let attempt = 0; attempt < 8; attempt++) {
-    const cost = probeCost(refined, facts);
-    if (cost <= share) break;
-    refined = { ...refined, splitAbove: refined.splitAbove * Math.max(1.5, (cost / share) ** 1.3) };
+  const tolerance = tolerances(job, facts, survey, wish.accuracy);
+  let splitAbove = firstSplit / Math.sqrt(facts.points);
+  const samplesPerCell = Math.max(8, Math.ceil(greed * share));
+  const settings = (): RefineJob => ({ ...job, regularEv, tolerance, splitAbove, depthLimit, samplesPerCell });
+  for (let attempt = 0; attempt < mostAttempts; attempt++) {
+    const { cost, spread } = probe(settings(), facts);
+    if (cost > share) {
+      splitAbove *= Math.max(1.5, cost / share);
+      if (attempt > 0) break;
+    } else if (spread > samplingShare) splitAbove *= Math.max(0.2, (0.8 * samplingShare) / spread);
+    else break;
   }
-  return refined;
+  return settings();
 }

@@ -25,7 +25,7 @@ export function performTask({ work, task }: Order): Sections {
     case "survey":
       return surveyPass(work.job, work.regularEv, task);
     case "refine":
-      return refinePass(work.job, task);
+      return refinePass(work.job, [task]);
   }
 }
 
