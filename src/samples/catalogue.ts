@@ -9,6 +9,7 @@ import { luttingerSample } from "./luttinger.js";
 import { metalSample } from "./metal.js";
 import type { SampleModel } from "./model.js";
 import type { Parameter, ParameterValue, Sample, SampleMesh } from "./parameter.js";
+import { zincblendeSample } from "./pseudopotential.js";
 import { randomSample } from "./random.js";
 import { rashbaSample } from "./rashba.js";
 import { spSquareSample } from "./sp-square.js";
@@ -20,6 +21,7 @@ export const sampleCatalogue: readonly Sample[] = [
   kaneMeleSample,
   rashbaSample,
   luttingerSample,
+  zincblendeSample,
   spSquareSample,
   metalSample,
   demoSample,

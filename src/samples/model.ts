@@ -24,7 +24,10 @@ export interface SampleModel {
   readonly source: string;
   readonly vectorsA: readonly [Triple, Triple, Triple];
   readonly periodic: 2 | 3;
+  /** Bands that are written: the lowest of them where the basis is larger. */
   readonly bands: number;
+  /** Size of the fixed basis, that of every matrix of the model; left out: `bands`. */
+  readonly basisSize?: number;
   readonly electronsPerBand: 1 | 2;
   /** Valence electrons per cell in these bands, where the model has a natural filling. */
   readonly electrons: number | undefined;

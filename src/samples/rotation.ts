@@ -3,24 +3,27 @@ import type { ComplexMatrix } from "./model.js";
 
 /** Turns the matrices of one k point after another into an eigenbasis; the memory is taken once. */
 export interface Rotation {
-  /** Takes the eigenvectors of the next k point: rows C, complex interleaved, n x n. */
+  /** Takes the eigenvectors of the next k point: rows C, complex interleaved, n each; those beyond the kept ones are not read. */
   setVectors(vectors: Float64Array): void;
-  /** out <- C* M C^T, M Hermitian; exactly Hermitian, diagonal exactly real. `out` must not be M. */
+  /** out <- C* M C^T (kept x kept), M Hermitian; exactly Hermitian, diagonal exactly real. `out` must not be M. */
   rotate(m: ComplexMatrix, out: ComplexMatrix): void;
 }
 
-/** For n x n matrices. Odd n is padded with a row and a column of zeros, so that the kernels may take two at a time. */
-export function createRotation(n: number): Rotation {
-  const size = n + (n % 2);
-  const [conjugates, columns, half] = [0, 1, 2].map(() => new Float64Array(2 * size * size));
+/**
+ * For n x n matrices into the first `kept` eigenvectors. An odd `kept` is padded with a band of zeros, so that the kernels may
+ * take two at a time.
+ */
+export function createRotation(n: number, kept = n): Rotation {
+  const size = kept + (kept % 2);
+  const [conjugates, columns, half] = [0, 1, 2].map(() => new Float64Array(2 * n * size));
   return {
     setVectors(vectors) {
-      for (let band = 0; band < n; band++) {
+      for (let band = 0; band < kept; band++) {
         for (let j = 0; j < n; j++) {
           const re = vectors[2 * (band * n + j)];
           const im = vectors[2 * (band * n + j) + 1];
-          conjugates[2 * (band * size + j)] = re;
-          conjugates[2 * (band * size + j) + 1] = -im;
+          conjugates[2 * (band * n + j)] = re;
+          conjugates[2 * (band * n + j) + 1] = -im;
           columns[2 * (j * size + band)] = re;
           columns[2 * (j * size + band) + 1] = im;
         }
@@ -28,7 +31,7 @@ export function createRotation(n: number): Rotation {
     },
     rotate(m, out) {
       timesColumns(n, size, m, columns, half);
-      upperProduct(n, size, conjugates, half, out);
+      upperProduct(n, kept, conjugates, half, out);
     },
   };
 }
@@ -67,11 +70,12 @@ function timesColumns(n: number, size: number, m: ComplexMatrix, columns: Float6
  * out <- C* (M C^T): the upper triangle, mirrored. Tiles of two rows and two columns keep eight sums in registers (see
  * kernel/product.ts, which computes the whole square); one loop nest of more than 40 lines for that reason.
  */
-function upperProduct(n: number, size: number, a: Float64Array, b: Float64Array, out: ComplexMatrix): void {
-  const step = 2 * size;
-  for (let bra = 0; bra < n; bra += 2) {
+function upperProduct(n: number, kept: number, a: Float64Array, b: Float64Array, out: ComplexMatrix): void {
+  const step = 2 * n;
+  const down = 2 * (kept + (kept % 2));
+  for (let bra = 0; bra < kept; bra += 2) {
     const row = bra * step;
-    for (let ket = bra; ket < n; ket += 2) {
+    for (let ket = bra; ket < kept; ket += 2) {
       let re00 = 0;
       let im00 = 0;
       let re01 = 0;
@@ -98,12 +102,12 @@ function upperProduct(n: number, size: number, a: Float64Array, b: Float64Array,
         im10 = im10 + a1re * b0im + a1im * b0re;
         re11 = re11 + a1re * b1re - a1im * b1im;
         im11 = im11 + a1re * b1im + a1im * b1re;
-        q += step;
+        q += down;
       }
-      putPair(n, bra, ket, re00, im00, out);
-      if (ket + 1 < n) putPair(n, bra, ket + 1, re01, im01, out);
-      if (bra + 1 < n && ket > bra) putPair(n, bra + 1, ket, re10, im10, out);
-      if (bra + 1 < n && ket + 1 < n) putPair(n, bra + 1, ket + 1, re11, im11, out);
+      putPair(kept, bra, ket, re00, im00, out);
+      if (ket + 1 < kept) putPair(kept, bra, ket + 1, re01, im01, out);
+      if (bra + 1 < kept && ket > bra) putPair(kept, bra + 1, ket, re10, im10, out);
+      if (bra + 1 < kept && ket + 1 < kept) putPair(kept, bra + 1, ket + 1, re11, im11, out);
     }
   }
 }

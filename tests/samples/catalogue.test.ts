@@ -22,6 +22,7 @@ describe("the catalogue", () => {
         "kane-mele",
         "rashba",
         "luttinger",
+        "zincblende",
         "sp-square",
         "metal",
         "demo",
