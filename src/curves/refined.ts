@@ -3,7 +3,7 @@ import { boltzmannEvPerK } from "../base/constants.js";
 import { coarseNodes, indicatorNodes, type LevelAxis, type NodeAxis } from "../spectrum/axis.js";
 import type { Sections } from "../spectrum/sections.js";
 import type { ColumnCurves, SpectraFacts } from "./assemble.js";
-import { type CurveSampler, occupiedWeight } from "./occupation.js";
+import { type CurveSampler, occupiedWeight, sampleCurves } from "./occupation.js";
 
 /**
  * Once the neighbours have corrected the local models, their error falls like the fourth power of a fine mesh step; on the meshes
@@ -29,6 +29,38 @@ export interface RefinedFacts extends SpectraFacts {
 export interface RefinedErrors {
   readonly sampling: ColumnCurves;
   readonly model: ColumnCurves;
+}
+
+/** The defect is known at stored points alone: below this part of the energy that the mesh resolves it is not followed. */
+const defectDetail = 1 / 12;
+
+/**
+ * Occupied weight of a refined mesh: the trees of cells at the asked temperature, and the neighbour defect at no less than the
+ * temperature whose kT the mesh can follow (`detailEv`), so that a cold curve keeps no steps from single points.
+ */
+function refinedSampler(sections: Sections, name: string, axis: NodeAxis, columns: number, detailEv: number): CurveSampler {
+  const trees = samplerOf(sections, name, axis, columns);
+  const defect = samplerOf(sections, `${name}.defect`, axis, columns);
+  const part = new Float64Array(columns);
+  return (levelEv, temperatureK, out) => {
+    trees(levelEv, temperatureK, out);
+    defect(levelEv, Math.max(temperatureK, detailEv / boltzmannEvPerK), part);
+    for (let c = 0; c < columns; c++) out[c] += part[c];
+  };
+}
+
+/** Curves of all columns, zone means. */
+export function refinedCurves(sections: Sections, facts: RefinedFacts): ColumnCurves {
+  const { axis, columns, points } = facts;
+  const sampler = refinedSampler(sections, "refine", axis.nodes, columns, facts.regularEv * defectDetail);
+  return sampleCurves(
+    (levelEv, temperatureK, out) => {
+      sampler(levelEv, temperatureK, out);
+      for (let c = 0; c < columns; c++) out[c] /= points;
+    },
+    axis,
+    columns,
+  );
 }
 
 type Squares = (levelEv: number, temperatureK: number, out: Float64Array) => void;
@@ -74,15 +106,16 @@ function samplerOf(sections: Sections, name: string, axis: NodeAxis, columns: nu
 function modelSquares(sections: Sections, facts: RefinedFacts): Squares {
   const { axis, columns, points, subMeshes } = facts;
   const nodes = coarseNodes(axis);
-  const defect = samplerOf(sections, "refine.defect", nodes, columns);
+  const defect = samplerOf(sections, "refine.defect", axis.nodes, columns);
   const wrong = new Float64Array(columns);
   if (subMeshes === undefined)
     return (levelEv, temperatureK, out) => {
       defect(levelEv, temperatureK, wrong);
       for (let c = 0; c < columns; c++) out[c] = ((remainingDefect * wrong[c]) / points) ** 2;
     };
-  const fine = samplerOf(sections, "refine", axis.nodes, columns);
-  const coarse = samplerOf(sections, "coarse", nodes, columns);
+  const detail = facts.regularEv * defectDetail;
+  const fine = refinedSampler(sections, "refine", axis.nodes, columns, detail);
+  const coarse = refinedSampler(sections, "coarse", nodes, columns, detail * subMeshes.stride);
   const ofFine = new Float64Array(columns);
   const ofCoarse = new Float64Array(columns);
   const scale = 1 / (subMeshes.stride ** modelOrder - 1);

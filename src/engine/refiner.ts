@@ -4,7 +4,7 @@ import type { GridFacts, Triple } from "../grid/grid.js";
 import { type Closeness, mayTouch } from "../refine/gaps.js";
 import { createSpectralNorm, type SpectralNorm } from "../refine/indicator.js";
 import { createTree, type Family } from "../refine/tree.js";
-import { coarseNodes, indicatorNodes, type NodeAxis } from "../spectrum/axis.js";
+import { indicatorNodes, type NodeAxis } from "../spectrum/axis.js";
 import type { Sections } from "../spectrum/sections.js";
 import { type BoxSpectrum, createBoxSpectrum } from "./box-spectrum.js";
 import { columnCount } from "./columns.js";
@@ -20,12 +20,6 @@ export const counters = { samples: 0, defectSamples: 1, splitCells: 2, unresolve
 /** Weights of Richardson's extrapolation of a family: parent and children err like the square of their size. */
 const childShare = 4 / 3;
 const parentShare = -1 / 3;
-
-/** The defect is spread over boxes of half a cell and of a whole one, in the mixture that adds no variance to the energies. */
-const defectSpread: readonly (readonly [size: number, share: number])[] = [
-  [0.5, 4 / 3],
-  [1, -1 / 3],
-];
 
 /** One mesh to refine: the stored one, or a contained sub-mesh that shows how the model's error falls with the mesh step. */
 export interface RefinerPlan {
@@ -54,7 +48,7 @@ export function createRefiner(plan: RefinerPlan): Refiner {
   const { job, facts, edges, sampler } = plan;
   const columns = columnCount(job.plan);
   const main = createBoxSpectrum(plan.axis, columns, edges);
-  const defect = createBoxSpectrum(coarseNodes(job.axis), columns, edges);
+  const defect = createBoxSpectrum(plan.axis, columns, edges);
   const judge = createJudge(plan);
   const tally = new Float64Array(counters.depths + depthsCounted);
   const tree = createTree<BandSample>({
@@ -71,12 +65,6 @@ export function createRefiner(plan: RefinerPlan): Refiner {
   const root = newSample(facts, columns);
   const other = newSample(facts, columns);
   const steps = neighbourSteps(facts.periodic);
-  const addDefect = (sample: BandSample, weight: number): void => {
-    for (const [size, share] of defectSpread) {
-      main.add(sample, size, weight * share);
-      defect.add(sample, size, weight * share);
-    }
-  };
   return {
     refine() {
       root.t.fill(0);
@@ -88,11 +76,11 @@ export function createRefiner(plan: RefinerPlan): Refiner {
       tally[counters.depths + Math.min(cost.deepest, depthsCounted - 1)]++;
       // (1/24) sum over cells and neighbours of (stored truth - model's guess): each stored point is the neighbour of 2d cells.
       sampler.evaluateRegular(root, edges);
-      addDefect(root, steps.length / 24);
+      defect.add(root, 0, steps.length / 24);
       for (const t of steps) {
         other.t.set(t);
         sampler.evaluateRegular(other, edges);
-        addDefect(other, -1 / 24);
+        defect.add(other, 0, -1 / 24);
       }
       tally[counters.defectSamples] += steps.length;
     },

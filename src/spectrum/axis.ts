@@ -40,9 +40,9 @@ export const nodeEv = (axis: NodeAxis, i: number): number => axis.startEv + i * 
 
 /**
  * Chooses nodes so fine that the lowest temperature is resolved, and so wide that the highest one is covered.
- * Throws a usage Fault when the window and the lowest temperature together ask for too many nodes.
+ * `leastMarginEv` is kept free beyond the window at least. Throws a usage Fault when the window and the lowest temperature together ask for too many nodes.
  */
-export function planAxis(window: Window, temperaturesK: readonly number[]): LevelAxis {
+export function planAxis(window: Window, temperaturesK: readonly number[], leastMarginEv = 0): LevelAxis {
   const { fromEv, toEv, points } = window;
   const single = points === 1;
   const levelStep = single ? 0.01 : (toEv - fromEv) / (points - 1);
@@ -53,7 +53,7 @@ export function planAxis(window: Window, temperaturesK: readonly number[]): Leve
   const perLevel = Math.ceil(levelStep / finest - 1e-9);
   const stepEv = levelStep / perLevel;
   const reach = warm.length > 0 ? Math.max(...warm) * fermiReach : 0;
-  const margin = Math.ceil(Math.max(reach, 2 * levelStep) / stepEv) + 8;
+  const margin = Math.ceil(Math.max(reach, 2 * levelStep, leastMarginEv) / stepEv) + 8;
   const count = (points - 1) * perLevel + 1 + 2 * margin;
   if (count > mostNodes)
     throw usageFault(

@@ -13,7 +13,7 @@ import {
   spreadCurves,
 } from "../curves/assemble.js";
 import type { CurvesResult, ResponseCurve, Table } from "../curves/result.js";
-import { type RefinedErrors, refinedErrors } from "../curves/refined.js";
+import { type RefinedErrors, refinedCurves, refinedErrors } from "../curves/refined.js";
 import { cutTasks, type RefineJob, type SweepJob } from "../engine/job.js";
 import { resolvedEnergy } from "../engine/mesh-step.js";
 import { planRefinement } from "../engine/refine-plan.js";
@@ -48,6 +48,8 @@ export type SweepOptions = z.infer<typeof sweepOptions>;
 export const intrinsicOnly = "intrinsic only, rigid band";
 
 interface SweepPlan {
+  /** Energy that the mesh resolves, for `refine`; 0 otherwise. */
+  readonly regularEv: number;
   readonly job: SweepJob;
   readonly facts: GridFacts;
   readonly reference: ReferenceLevel;
@@ -70,15 +72,16 @@ export function planSweep(directory: string, options: SweepOptions): SweepPlan {
     toEv: reference.levelEv + options.to,
     points: options.points,
   };
+  const regularEv = options.method === "refine" ? resolvedEnergy(facts, window.fromEv, window.toEv) : 0;
   const job: SweepJob = {
     directory,
     method: options.method,
     plan,
     denominator: { degenerateEv: options.degenerate, broadenEv: options.broaden },
-    axis: planAxis(window, temperatures),
+    axis: planAxis(window, temperatures, marginForDefect * regularEv),
   };
   for (const column of plan.columns) unitOf(column.carrier, facts, options);
-  return { job, facts, reference, options };
+  return { job, facts, reference, options, regularEv };
 }
 
 const unitOf = (carrier: string, facts: GridFacts, options: SweepOptions) => responseUnit(carrier, facts, options.unit);
@@ -89,14 +92,15 @@ interface Computed {
   readonly refined: RefineJob | undefined;
 }
 
+/** The neighbour defect of a cold curve is followed in steps of the resolved energy, also on the contained mesh. */
+const marginForDefect = 2.5;
+
 /** Samples that may be spent where the user names no number. */
 const defaultSamples = (points: number): number => 1_000_000 + 30 * points;
 
-async function compute({ job, facts, options }: SweepPlan, run: RunOptions): Promise<Computed> {
+async function compute({ job, facts, options, regularEv }: SweepPlan, run: RunOptions): Promise<Computed> {
   const tasks = cutTasks(facts.points);
   if (job.method !== "refine") return { sections: await runTasks({ kind: "mesh", job }, tasks, run), refined: undefined };
-  const levels = job.axis.levelsEv;
-  const regularEv = resolvedEnergy(facts, levels[0], levels[levels.length - 1]);
   const quiet = { workers: run.workers, signal: run.signal };
   const survey = await runTasks({ kind: "survey", job, regularEv }, tasks, quiet);
   const wish = { accuracy: options.accuracy, samples: options.samples ?? defaultSamples(facts.points) };
@@ -208,7 +212,10 @@ function assembleResult(planned: SweepPlan, computed: Computed): CurvesResult {
   const { job, facts, reference, options } = planned;
   const { sections } = computed;
   const known = spectraFacts(planned);
-  const curves = occupiedCurves(sections, job.method, known);
+  const { refined } = computed;
+  const curves = refined
+    ? refinedCurves(sections, { ...known, regularEv: refined.regularEv })
+    : occupiedCurves(sections, job.method, known);
   const levels = Array.from(job.axis.levelsEv, (_, i) =>
     options.points === 1 ? options.from : options.from + (i * (options.to - options.from)) / (options.points - 1),
   );
