@@ -3,7 +3,7 @@ import type { GridFacts, Triple } from "../grid/grid.js";
 import type { PointRef } from "../kernel/kernel.js";
 import { createLocalModel } from "../kernel/local.js";
 import type { Sample } from "../refine/tree.js";
-import { columnCount, fillColumns } from "./columns.js";
+import { columnCount, fillColumns, mixColumns } from "./columns.js";
 import type { RefineJob } from "./job.js";
 
 /** What the local model says at one place: energies and slopes of every band, and its columns. */
@@ -47,7 +47,8 @@ export interface LocalSampler {
 /** A sampler for one grid and job; allocates nothing per sample. */
 export function createLocalSampler(job: RefineJob, facts: GridFacts): LocalSampler {
   const { bands } = facts;
-  const { products } = job.plan;
+  const mixed = mixColumns(job.plan);
+  const { products } = mixed;
   const columns = columnCount(job.plan);
   const regular = { degenerateEv: 0, broadenEv: Math.hypot(job.regularEv, job.denominator.broadenEv) };
   const model = createLocalModel({
@@ -69,7 +70,7 @@ export function createLocalSampler(job: RefineJob, facts: GridFacts): LocalSampl
     sample.slopes.set(model.slopes);
     averageSlopes(sample.energyEv, sample.slopes, job.denominator.degenerateEv);
     for (let band = 0; band < bands; band++) {
-      fillColumns(job.plan, source, bands, band, row);
+      fillColumns(mixed, source, bands, band, row);
       sample.values.set(row, band * columns);
     }
   };

@@ -30,6 +30,12 @@ export interface Product {
   readonly field: 0 | 1 | 2;
 }
 
+/** As a Product, but of a current that is a weighted sum of currents: sum_i weight_i j_i. Costs no more than one current. */
+export interface MixedProduct {
+  readonly current: readonly { readonly moment: number; readonly flow: 0 | 1 | 2; readonly weight: number }[];
+  readonly field: 0 | 1 | 2;
+}
+
 /** How denominators are taken: pairs closer than `degenerateEv` are skipped; `broadenEv` is eta. */
 export interface Denominator {
   readonly degenerateEv: number;

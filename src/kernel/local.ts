@@ -9,7 +9,17 @@ import { hbar2OverMeEvA2 } from "../base/constants.js";
 import { createEigensolver } from "./eigen.js";
 import { addMultiple, createHamiltonian } from "./hamiltonian.js";
 import type { Denominator, PointRef } from "./kernel.js";
-import { createOperatorStore, type OperatorSpec, type OperatorStore, type Pack } from "./operators.js";
+import {
+  createOperatorStore,
+  currentOf,
+  type Operator,
+  type OperatorSpec,
+  type OperatorStore,
+  operatorKey,
+  type Pack,
+  velocityDirection,
+  velocityOf,
+} from "./operators.js";
 import { addPairs, fillInverse, packAntiHermitian, packHermitian, pairCount, weighPairs } from "./pairs.js";
 import { multiplyInto } from "./product.js";
 
@@ -76,16 +86,16 @@ function createRotation(bands: number, store: OperatorStore): Rotation {
     }
     multiplyInto(size, shape, moves ? packed : data, moves ? 0 : offset, columns, 0, moved, 0);
     if (shape === "lower") {
-      addLowerSlopes(bands, size, columns, moved, operators[0].direction, slopes);
+      addLowerSlopes(bands, size, columns, moved, operators[0][0].direction, slopes);
       return;
     }
     multiplyInto(size, "full", conjugate, 0, moved, 0, rotated, 0);
     for (let i = 0; i < operators.length; i++) {
-      const { moment, direction } = operators[i];
+      const direction = velocityDirection(operators[i]);
       const at = pack.pairOffset + i * bands * (bands - 1);
       if (i === 0) packHermitian(bands, size, rotated, 0, pairs, at);
       else packAntiHermitian(bands, size, rotated, 0, pairs, at);
-      if (moment >= 0) continue;
+      if (direction === undefined) continue;
       for (let n = 0; n < bands; n++) slopes[3 * n + direction] = rotated[2 * (n * size + n) + i];
     }
   };
@@ -118,10 +128,11 @@ function addFreeElectron(bands: number, q: Float64Array, energyEv: Float64Array,
   }
 }
 
-/** Place among the packed pairs of the operator (moment, direction). */
-function pairsOf(packs: readonly Pack[], bands: number, moment: number, direction: number): number {
+/** Place among the packed pairs of an operator. */
+function pairsOf(packs: readonly Pack[], bands: number, wanted: Operator): number {
+  const key = operatorKey(wanted);
   for (const { operators, shape, pairOffset } of packs) {
-    const index = operators.findIndex((operator) => operator.moment === moment && operator.direction === direction);
+    const index = operators.findIndex((operator) => operatorKey(operator) === key);
     if (shape === "full" && index >= 0) return pairOffset + index * bands * (bands - 1);
   }
   return -1;
@@ -133,8 +144,8 @@ function createCurvatures({ bands, products, denominators }: LocalSpec, packs: r
   const inverse = new Float64Array(count);
   const weights = new Float64Array(3 * 2 * count);
   const fields = [...new Set(products.map((product) => product.field))];
-  const fieldPairs = fields.map((field) => pairsOf(packs, bands, -1, field));
-  const currentPairs = products.map(({ moment, flow }) => pairsOf(packs, bands, Math.max(moment, -1), flow));
+  const fieldPairs = fields.map((field) => pairsOf(packs, bands, velocityOf(field)));
+  const currentPairs = products.map((product) => pairsOf(packs, bands, currentOf(product)));
   return (energyEv: Float64Array, pairs: Float64Array, curvature: Float64Array): void => {
     curvature.fill(0, 0, denominators.length * products.length * bands);
     for (let d = 0; d < denominators.length; d++) {

@@ -7,15 +7,31 @@
 import { hbar2OverMeEvA2 } from "../base/constants.js";
 import type { HessianKind } from "../grid/grid.js";
 import { hessianIndex } from "./hamiltonian.js";
-import type { MatrixRef, PointRef, Product } from "./kernel.js";
+import type { MatrixRef, MixedProduct, PointRef, Product } from "./kernel.js";
 import { pairCount } from "./pairs.js";
 import { copyPadded, multiplyInto } from "./product.js";
 
-/** The velocity of a direction (moment -1), or the current (O v + v O) / 2 of a moment flowing that way. */
-export interface Operator {
-  readonly moment: number;
-  readonly direction: number;
+/** A weighted sum of velocities (moment -1) and of currents (O v + v O) / 2 of a moment flowing in a direction. */
+export type Operator = readonly { readonly moment: number; readonly direction: number; readonly weight: number }[];
+
+/** The velocity of one direction. */
+export const velocityOf = (direction: number): Operator => [{ moment: -1, direction, weight: 1 }];
+
+/** The direction of an operator that is a velocity; undefined for any other. */
+export function velocityDirection(operator: Operator): number | undefined {
+  const [part] = operator;
+  return operator.length === 1 && part.moment < 0 && part.weight === 1 ? part.direction : undefined;
 }
+
+/** The current of a product as an operator. */
+export const currentOf = (product: AnyProduct): Operator =>
+  "current" in product
+    ? product.current.map(({ moment, flow, weight }) => ({ moment: Math.max(moment, -1), direction: flow, weight }))
+    : [{ moment: Math.max(product.moment, -1), direction: product.flow, weight: 1 }];
+
+/** Tells equal operators by equal text. */
+export const operatorKey = (operator: Operator): string =>
+  operator.map(({ moment, direction, weight }) => `${moment}/${direction}/${weight}`).join("+");
 
 /** One or two operators that are rotated together: matrix(q) = base + sum over terms of q_direction * term. */
 export interface Pack {
@@ -29,11 +45,14 @@ export interface Pack {
   readonly terms: readonly { readonly direction: number; readonly offset: number }[];
 }
 
+/** A product of one current, or of a weighted sum of currents. */
+export type AnyProduct = Product | MixedProduct;
+
 /** What the packs are made from. */
 export interface OperatorSpec {
   readonly bands: number;
   readonly hessian: HessianKind;
-  readonly products: readonly Product[];
+  readonly products: readonly AnyProduct[];
   /** Directions whose slopes are wanted; every flow and field of the products is among them. */
   readonly directions: readonly number[];
 }
@@ -48,18 +67,19 @@ export interface OperatorStore {
 
 /** Operators whose every element is wanted, velocities first, each once; and velocities wanted for slopes only. */
 function chooseOperators({ products, directions }: OperatorSpec): { full: Operator[]; slopeOnly: Operator[] } {
-  const velocities = new Set(products.flatMap((p) => (p.moment < 0 ? [p.flow, p.field] : [p.field])));
-  const currents = new Map(products.filter((p) => p.moment >= 0).map((p) => [`${p.moment}/${p.flow}`, p]));
-  const full: Operator[] = [...velocities].sort().map((direction) => ({ moment: -1, direction }));
-  for (const { moment, flow } of currents.values()) full.push({ moment, direction: flow });
-  const rest = directions.filter((direction) => !velocities.has(direction as 0 | 1 | 2));
-  return { full, slopeOnly: rest.map((direction) => ({ moment: -1, direction })) };
+  const wanted = products.flatMap((product) => [velocityOf(product.field), currentOf(product)]);
+  const distinct = new Map(wanted.map((operator) => [operatorKey(operator), operator]));
+  const velocities = directions.map(velocityOf).filter((operator) => distinct.has(operatorKey(operator)));
+  const currents = [...distinct.values()].filter((operator) => velocityDirection(operator) === undefined);
+  const slopeOnly = directions.map(velocityOf).filter((operator) => !distinct.has(operatorKey(operator)));
+  return { full: [...velocities, ...currents], slopeOnly };
 }
 
 /** Directions along which an operator changes with q, other than by a multiple of one. */
 function changesAlong(operator: Operator, { hessian, directions }: OperatorSpec): readonly number[] {
   if (hessian === "array") return directions;
-  return hessian === "free-electron" && operator.moment >= 0 ? [operator.direction] : [];
+  if (hessian === "none") return [];
+  return operator.filter(({ moment }) => moment >= 0).map(({ direction }) => direction);
 }
 
 function planPacks(spec: OperatorSpec, matrixLength: number): { packs: Pack[]; length: number } {
@@ -105,14 +125,21 @@ function addMatrix(
   }
 }
 
-/** out += (M + M^H) / 2, or i times that for the second of a pack. */
-function addHermitianPart(size: number, m: Float64Array, second: boolean, out: Float64Array, at: number): void {
+/** out += factor (M + M^H) / 2, or i times that for the second of a pack. */
+function addHermitianPart(
+  size: number,
+  m: Float64Array,
+  factor: number,
+  second: boolean,
+  out: Float64Array,
+  at: number,
+): void {
   for (let i = 0; i < size; i++) {
     for (let j = 0; j < size; j++) {
       const x = 2 * (i * size + j);
       const y = 2 * (j * size + i);
-      const re = 0.5 * (m[x] + m[y]);
-      const im = 0.5 * (m[x + 1] - m[y + 1]);
+      const re = 0.5 * factor * (m[x] + m[y]);
+      const im = 0.5 * factor * (m[x + 1] - m[y + 1]);
       out[at + x] += second ? -im : re;
       out[at + x + 1] += second ? re : im;
     }
@@ -139,34 +166,37 @@ export function createOperatorStore(spec: OperatorSpec): OperatorStore {
   const right = new Float64Array(matrixLength);
   const product = new Float64Array(matrixLength);
 
-  /** Adds the operator that is made of the moment (if any) and of `velocity`, which may be a derivative of it. */
-  const add = (point: PointRef, moment: number, velocity: MatrixRef, second: boolean, at: number) => {
-    if (moment < 0) return addMatrix(bands, size, velocity, 1, second, data, at);
+  /** Adds the part that is made of the moment (if any) and of `velocity`, which may be a derivative of it. */
+  const add = (point: PointRef, part: Operator[number], velocity: MatrixRef, second: boolean, at: number) => {
+    const { moment, weight } = part;
+    if (moment < 0) return addMatrix(bands, size, velocity, weight, second, data, at);
     const o = point.moments[moment];
     copyPadded(bands, size, o.data, o.offset, left, 0);
     copyPadded(bands, size, velocity.data, velocity.offset, right, 0);
     multiplyInto(size, "full", left, 0, right, 0, product, 0);
-    addHermitianPart(size, product, second, data, at);
+    addHermitianPart(size, product, weight, second, data, at);
   };
 
-  const loadTerm = (point: PointRef, operator: Operator, direction: number, second: boolean, at: number) => {
-    const { moment } = operator;
+  const loadTerm = (point: PointRef, part: Operator[number], direction: number, second: boolean, at: number) => {
+    const { moment, weight } = part;
     if (hessian === "array") {
-      const w = (point.hessian as readonly MatrixRef[])[hessianIndex(operator.direction, direction)];
-      add(point, moment, w, second, at);
-    } else if (moment >= 0 && operator.direction === direction) {
-      addMatrix(bands, size, point.moments[moment], hbar2OverMeEvA2, second, data, at);
+      const w = (point.hessian as readonly MatrixRef[])[hessianIndex(part.direction, direction)];
+      add(point, part, w, second, at);
+    } else if (moment >= 0 && part.direction === direction) {
+      addMatrix(bands, size, point.moments[moment], weight * hbar2OverMeEvA2, second, data, at);
     }
+  };
+
+  const loadPart = (point: PointRef, pack: Pack, part: Operator[number], second: boolean) => {
+    add(point, part, point.velocity[part.direction] as MatrixRef, second, pack.offset);
+    for (const { direction, offset } of pack.terms) loadTerm(point, part, direction, second, offset);
   };
 
   const load = (point: PointRef) => {
     data.fill(0);
     for (const pack of packs) {
-      for (const [index, operator] of pack.operators.entries()) {
-        const second = index === 1;
-        add(point, operator.moment, point.velocity[operator.direction] as MatrixRef, second, pack.offset);
-        for (const { direction, offset } of pack.terms) loadTerm(point, operator, direction, second, offset);
-      }
+      for (const [index, operator] of pack.operators.entries())
+        for (const part of operator) loadPart(point, pack, part, index === 1);
       if (pack.shape === "full") continue;
       keepLower(size, data, pack.offset);
       for (const { offset } of pack.terms) keepLower(size, data, offset);
