@@ -31,7 +31,8 @@ export async function createProgram(context: Context, words: readonly string[]):
     .configureOutput({ outputError: () => {} })
     .exitOverride()
     .addHelpText("after", exitStatusHelp);
-  const named = Object.hasOwn(commands, words[0] ?? "") ? [words[0]] : Object.keys(commands);
+  const known = Object.keys(commands);
+  const named = words[0] === "--version" ? [] : known.includes(words[0] ?? "") ? [words[0]] : known;
   for (const name of named) (await commands[name]()).register(program, context);
   return program;
 }

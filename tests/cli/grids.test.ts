@@ -3,6 +3,7 @@ import { existsSync, readFileSync, rmSync, truncateSync } from "node:fs";
 import { join } from "node:path";
 import { afterAll, describe, expect, it } from "vitest";
 import { freshDirectory, runCommand } from "../tooling/command.js";
+import { runInProcess } from "../tooling/in-process.js";
 
 const root = freshDirectory();
 afterAll(() => rmSync(root, { recursive: true, force: true }));
@@ -58,7 +59,7 @@ describe("tidegauge sample", () => {
       [[], /no model is named/],
     ];
     for (const [args, message] of cases) {
-      const { status, stdout, stderr } = await runCommand(["sample", ...args]);
+      const { status, stdout, stderr } = await runInProcess(["sample", ...args]);
       expect({ args, status, stdout }).toEqual({ args, status: 2, stdout: "" });
       expect(stderr).toMatch(/^tidegauge: .*\n {2}.*\n$/);
       expect(stderr).toMatch(message);
