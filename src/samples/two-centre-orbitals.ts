@@ -1,10 +1,9 @@
 // two-centre-orbitals.ts: the nine real orbitals s, p, d of one atom, and the angular momentum and spin matrices in their basis.
 import type { ComplexMatrix } from "./model.js";
 
-/** Orbitals of one atom, in the order of every 9-index below; with spin, index = 9 * spin + orbital, spin up first. */
-export const orbitalNames = ["s", "x", "y", "z", "xy", "yz", "zx", "x2-y2", "3z2-r2"] as const;
-/** Number of spatial orbitals. */
-export const orbitalCount = 9;
+// Orbitals of one atom in the order of every 9-index below: s, x, y, z, xy, yz, zx, x2-y2, 3z2-r2; with spin,
+// index = 9 * spin + orbital, spin up first.
+
 /** First index of the p and of the d orbitals. */
 export const firstP = 1;
 export const firstD = 4;
