@@ -9,14 +9,14 @@ import { spanWidths } from "./pass.js";
 
 const mostPoints = 256;
 /** Bands this far outside the window still count: they are what the window's bands couple to. */
-const marginEv = 0.5;
+const marginEv = 2;
 /** The part of a band's span over one step that neighbouring stored points still resolve between them. */
-const resolvedPart = 0.4;
+const resolvedPart = 0.8;
 /** Where no band crosses the window, or none is sloped. */
 const fallbackEv = 0.1;
 
 /**
- * Energy (eV) that the mesh resolves in a window of absolute levels: 0.4 of the mean span of the window's bands over one mesh
+ * Energy (eV) that the mesh resolves in a window of absolute levels: 0.8 of the mean span of the window's bands over one mesh
  * step. Regularises the denominators of the neighbour defect.
  */
 export function resolvedEnergy(facts: GridFacts, fromEv: number, toEv: number): number {
