@@ -1,5 +1,6 @@
 // refined.ts: error bars of a refined sweep: what sampling left undecided, and what the local models got wrong.
 import { boltzmannEvPerK } from "../base/constants.js";
+import type { HessianKind } from "../grid/grid.js";
 import { coarseNodes, indicatorNodes, type LevelAxis, type NodeAxis } from "../spectrum/axis.js";
 import type { Sections } from "../spectrum/sections.js";
 import type { ColumnCurves, SpectraFacts } from "./assemble.js";
@@ -10,6 +11,10 @@ import { type CurveSampler, occupiedWeight, sampleCurves } from "./occupation.js
  * that people store it falls more slowly. The third power was calibrated on random crystals (tests/studies/calibration).
  */
 const modelOrder = 3;
+/** Without second derivatives the models are of lower order. */
+const lowerOrder = 2;
+/** From this many bands below the top on, sums over bands cut from plane waves are not to be trusted. */
+const untrustedBands = 2;
 /** Families let pass disagree alike where the crystal's symmetry makes them alike; calibrated likewise. */
 const likeness = 1.5;
 /** Where no sub-mesh shows how the error falls: the part of the neighbour defect that may remain. */
@@ -23,6 +28,8 @@ const neighbouringLevels = 9;
 export interface RefinedFacts extends SpectraFacts {
   /** Energy that the mesh resolves, eV; see engine/mesh-step. */
   readonly regularEv: number;
+  readonly hessian: HessianKind;
+  readonly bands: number;
 }
 
 /** Standard error bars by cause, zone means: [temperature][level][column]. */
@@ -38,7 +45,13 @@ const defectDetail = 1 / 12;
  * Occupied weight of a refined mesh: the trees of cells at the asked temperature, and the neighbour defect at no less than the
  * temperature whose kT the mesh can follow (`detailEv`), so that a cold curve keeps no steps from single points.
  */
-function refinedSampler(sections: Sections, name: string, axis: NodeAxis, columns: number, detailEv: number): CurveSampler {
+function refinedSampler(
+  sections: Sections,
+  name: string,
+  axis: NodeAxis,
+  columns: number,
+  detailEv: number,
+): CurveSampler {
   const trees = samplerOf(sections, name, axis, columns);
   const defect = samplerOf(sections, `${name}.defect`, axis, columns);
   const part = new Float64Array(columns);
@@ -66,7 +79,12 @@ export function refinedCurves(sections: Sections, facts: RefinedFacts): ColumnCu
 type Squares = (levelEv: number, temperatureK: number, out: Float64Array) => void;
 
 /** Root mean square of a quantity's square over levels within `halfWidthEv`. */
-function averaged(squares: Squares, columns: number, axis: LevelAxis, halfWidthEv: (temperatureK: number) => number): ColumnCurves {
+function averaged(
+  squares: Squares,
+  columns: number,
+  axis: LevelAxis,
+  halfWidthEv: (temperatureK: number) => number,
+): ColumnCurves {
   const { startEv, stepEv, count } = axis.nodes;
   const [low, high] = [startEv, startEv + (count - 1) * stepEv];
   const out = new Float64Array(columns);
@@ -118,7 +136,7 @@ function modelSquares(sections: Sections, facts: RefinedFacts): Squares {
   const coarse = refinedSampler(sections, "coarse", nodes, columns, detail * subMeshes.stride);
   const ofFine = new Float64Array(columns);
   const ofCoarse = new Float64Array(columns);
-  const scale = 1 / (subMeshes.stride ** modelOrder - 1);
+  const scale = 1 / (subMeshes.stride ** (facts.hessian === "none" ? lowerOrder : modelOrder) - 1);
   return (levelEv, temperatureK, out) => {
     fine(levelEv, temperatureK, ofFine);
     coarse(levelEv, temperatureK, ofCoarse);
@@ -130,12 +148,20 @@ function modelSquares(sections: Sections, facts: RefinedFacts): Squares {
   };
 }
 
+/** Doubles the bars where the level is near the top of bands that were cut from plane waves; in place. */
+function widenNearTop(errors: ColumnCurves, curves: ColumnCurves, { hessian, bands, columns }: RefinedFacts): void {
+  if (hessian !== "free-electron") return;
+  for (const [t, rows] of errors.entries())
+    for (const [level, row] of rows.entries())
+      if (curves[t][level][columns - 1] > bands - untrustedBands) for (let c = 0; c < columns; c++) row[c] *= 2;
+}
+
 /** Error bars of all columns. */
-export function refinedErrors(sections: Sections, facts: RefinedFacts): RefinedErrors {
+export function refinedErrors(sections: Sections, facts: RefinedFacts, curves: ColumnCurves): RefinedErrors {
   const { axis, columns } = facts;
   const warmth = (temperatureK: number): number => 2 * boltzmannEvPerK * temperatureK;
-  return {
-    sampling: averaged(samplingSquares(sections, indicatorNodes(axis), columns), columns, axis, warmth),
-    model: averaged(modelSquares(sections, facts), columns, axis, (t) => Math.max(facts.regularEv / 2, warmth(t))),
-  };
+  const sampling = averaged(samplingSquares(sections, indicatorNodes(axis), columns), columns, axis, warmth);
+  const model = averaged(modelSquares(sections, facts), columns, axis, (t) => Math.max(facts.regularEv / 4, warmth(t)));
+  widenNearTop(model, curves, facts);
+  return { sampling, model };
 }

@@ -6,7 +6,13 @@ import type { MixedProduct } from "../kernel/kernel.js";
 export const columnCount = (plan: ResponsePlan): number => plan.columns.length + 1;
 
 /** Writes the columns of one band: `products` is [product][band]; the last column is 1. */
-export function fillColumns(plan: Pick<ResponsePlan, "columns">, products: Float64Array, bands: number, band: number, out: Float64Array): void {
+export function fillColumns(
+  plan: Pick<ResponsePlan, "columns">,
+  products: Float64Array,
+  bands: number,
+  band: number,
+  out: Float64Array,
+): void {
   const { columns } = plan;
   for (let c = 0; c < columns.length; c++) {
     let sum = 0;

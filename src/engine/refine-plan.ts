@@ -18,6 +18,8 @@ export interface RefineWish {
 
 /** A response that vanishes by symmetry is not chased below this part of what single k points contribute to it. */
 const symmetryFloor = 0.02;
+/** Nor below this zone mean, angstrom^2 (a tenth of an S/cm in a metal's cell): round-off of large terms. */
+const absoluteFloor = 1e-4;
 /** Part of the tolerated error that sampling may use up. */
 const samplingShare = 0.3;
 /** First guess: families let pass err at random, so that the sum over N cells of errors below s is about s sqrt(N). */
@@ -45,10 +47,10 @@ function tolerances(job: SweepJob, facts: GridFacts, survey: Sections, accuracy:
     }
   for (const [at, size] of survey.size.entries()) {
     const c = at % columns;
-    if (c < columns - 1) largest[c] = Math.max(largest[c], symmetryFloor * size);
+    if (c < columns - 1) largest[c] = Math.max(largest[c], symmetryFloor * size, absoluteFloor * facts.points);
   }
   largest[columns - 1] = Math.max(facts.points, Math.max(...counts) - Math.min(...counts));
-  return Array.from(largest, (value) => Math.max((accuracy * value) / facts.points, Number.MIN_VALUE));
+  return Array.from(largest, (value) => (accuracy * value) / facts.points);
 }
 
 interface ProbeFindings {
@@ -61,7 +63,10 @@ interface ProbeFindings {
 /** What a few cells, spread evenly but in no step with the mesh, cost and leave undecided. */
 function probe(job: RefineJob, facts: GridFacts): ProbeFindings {
   const count = Math.min(probes, facts.points);
-  const cells = Array.from({ length: count }, (_, i) => ({ first: Math.floor((((i + 0.5) * goldenPart) % 1) * facts.points), count: 1 }));
+  const cells = Array.from({ length: count }, (_, i) => ({
+    first: Math.floor((((i + 0.5) * goldenPart) % 1) * facts.points),
+    count: 1,
+  }));
   const sections = refinePass({ ...job, probing: true }, cells);
   const tally = sections["refine.counters"];
   const squares = sections["refine.square"];
@@ -76,11 +81,17 @@ function probe(job: RefineJob, facts: GridFacts): ProbeFindings {
  * Settings of the refinement pass. A few probe cells show how much families may disagree for the whole sum to be as sure as is
  * asked; where the samples would not suffice, they may disagree by more, and the error bar tells what was reached.
  */
-export function planRefinement(job: SweepJob, facts: GridFacts, regularEv: number, survey: Sections, wish: RefineWish): RefineJob {
+export function planRefinement(
+  job: SweepJob,
+  facts: GridFacts,
+  regularEv: number,
+  survey: Sections,
+  wish: RefineWish,
+): RefineJob {
   const share = wish.samples / facts.points;
   const tolerance = tolerances(job, facts, survey, wish.accuracy);
   let splitAbove = firstSplit / Math.sqrt(facts.points);
-  const samplesPerCell = Math.max(8, Math.ceil(greed * share));
+  const samplesPerCell = Math.max(8, Math.ceil(Math.min(greed, Math.sqrt(facts.points)) * share));
   const settings = (): RefineJob => ({ ...job, regularEv, tolerance, splitAbove, depthLimit, samplesPerCell });
   for (let attempt = 0; attempt < mostAttempts; attempt++) {
     const { cost, spread } = probe(settings(), facts);

@@ -14,10 +14,15 @@ export interface RunOptions {
   readonly signal?: AbortSignal;
 }
 
-const interrupted = (): Fault => new Fault("interrupted", "interrupted; nothing was written", "start the command again");
+const interrupted = (): Fault =>
+  new Fault("interrupted", "interrupted; nothing was written", "start the command again");
 
 /** Performs every task and adds the results in order. With one worker nothing is spawned. */
-export async function runTasks<W extends Work>(work: W, tasks: readonly Task[], options: RunOptions): Promise<Sections> {
+export async function runTasks<W extends Work>(
+  work: W,
+  tasks: readonly Task[],
+  options: RunOptions,
+): Promise<Sections> {
   const total: Sections = {};
   let done = 0;
   const finish = (part: Sections): void => {
@@ -40,7 +45,12 @@ export async function runTasks<W extends Work>(work: W, tasks: readonly Task[], 
 /** How many finished results may wait for an earlier one: bounds memory. */
 const mostAhead = 2;
 
-async function runInWorkers(work: Work, tasks: readonly Task[], options: RunOptions, finish: (part: Sections) => void): Promise<void> {
+async function runInWorkers(
+  work: Work,
+  tasks: readonly Task[],
+  options: RunOptions,
+  finish: (part: Sections) => void,
+): Promise<void> {
   const threads = Math.min(options.workers, tasks.length);
   const pool = new Piscina({
     filename: new URL("./work.js", import.meta.url).href,

@@ -32,7 +32,10 @@ export function surveyPass(job: SweepJob, regularEv: number, task: Task): Sectio
   const edges = cellEdges(facts);
   const { broadenEv } = job.denominator;
   const plain = createPairPass(bands, job.plan.products, job.denominator);
-  const smooth = createPairPass(bands, job.plan.products, { degenerateEv: 0, broadenEv: Math.hypot(regularEv, broadenEv) });
+  const smooth = createPairPass(bands, job.plan.products, {
+    degenerateEv: 0,
+    broadenEv: Math.hypot(regularEv, broadenEv),
+  });
   const points = createPointTally(job.axis, columns, 0);
   const regular = createBoxSpectrum(coarseNodes(job.axis), columns, edges);
   const sample = newSample(facts, columns);
@@ -67,7 +70,13 @@ export function surveyPass(job: SweepJob, regularEv: number, task: Task): Sectio
 }
 
 /** size[level][column] += |sum over the bands below the level|. */
-function addMagnitudes(energies: Float64Array, values: Float64Array, levels: readonly number[], columns: number, size: Float64Array): void {
+function addMagnitudes(
+  energies: Float64Array,
+  values: Float64Array,
+  levels: readonly number[],
+  columns: number,
+  size: Float64Array,
+): void {
   for (let c = 0; c < columns; c++) {
     let band = 0;
     let sum = 0;

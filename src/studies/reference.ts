@@ -1,11 +1,11 @@
 // reference.ts: finds the level that holds a stated number of electrons, from the energies alone, when a grid states no Fermi level.
 import { occupiedWeight } from "../curves/occupation.js";
+import { walkPoints } from "../engine/blocks.js";
 import type { GridFacts } from "../grid/grid.js";
 import { openGrid } from "../grid/open.js";
 import { openReader } from "../grid/reader.js";
 import { planAxis } from "../spectrum/axis.js";
 import { createPointDeposit, createPointStore } from "../spectrum/points.js";
-import { walkPoints } from "../engine/blocks.js";
 
 /** Temperature at which a metal's level is sought: a stored mesh is too coarse for a sharp step. */
 export const referenceTemperatureK = 300;
@@ -34,7 +34,9 @@ function bandRanges(facts: GridFacts): Float64Array {
 
 function visitEnergies(facts: GridFacts, visit: (energies: Float64Array, offset: number) => void): void {
   const reader = openReader(openGrid(facts.directory), { velocity: [], moments: [], hessian: false });
-  walkPoints(reader, { first: 0, count: facts.points }, [], (_flat, point) => visit(point.energyEv, point.energyOffset));
+  walkPoints(reader, { first: 0, count: facts.points }, [], (_flat, point) =>
+    visit(point.energyEv, point.energyOffset),
+  );
   reader.close();
 }
 
@@ -56,17 +58,23 @@ export function referenceLevel(facts: GridFacts): ReferenceLevel {
   const below = Math.round(filled);
   if (Math.abs(filled - below) < 1e-9 && below > 0 && below < facts.bands) {
     const [top, bottom] = [ranges[2 * below - 1], ranges[2 * below]];
-    if (bottom > top) return { levelEv: (top + bottom) / 2, origin: `the middle of the gap above ${electrons} electrons` };
+    if (bottom > top)
+      return { levelEv: (top + bottom) / 2, origin: `the middle of the gap above ${electrons} electrons` };
   }
   const band = Math.min(facts.bands - 1, Math.floor(filled));
   const levelEv = solveLevel(facts, filled, ranges[2 * Math.max(0, band - 1)], ranges[2 * band + 1]);
-  return { levelEv, origin: `the level that holds ${electrons} electrons on the stored mesh at ${referenceTemperatureK} K` };
+  return {
+    levelEv,
+    origin: `the level that holds ${electrons} electrons on the stored mesh at ${referenceTemperatureK} K`,
+  };
 }
 
 /** Bisects N(mu, 300 K) = filled within a bracket of energies, widened by a few kT. */
 function solveLevel(facts: GridFacts, filled: number, lowEv: number, highEv: number): number {
   let [low, high] = [lowEv - 1, highEv + 1];
-  const axis = planAxis({ fromEv: low, toEv: high, points: 2 + Math.ceil((high - low) / 0.02) }, [referenceTemperatureK]);
+  const axis = planAxis({ fromEv: low, toEv: high, points: 2 + Math.ceil((high - low) / 0.02) }, [
+    referenceTemperatureK,
+  ]);
   const store = createPointStore(axis, 1);
   const deposit = createPointDeposit(store);
   const one = Float64Array.of(1);

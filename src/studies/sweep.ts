@@ -1,9 +1,9 @@
 // sweep.ts: how do the responses run with level and temperature, and how sure is that? Options, computation, result.
 import { z } from "zod";
-import { usageFault } from "../base/errors.js";
-import { productVersion } from "../base/version.js";
 import { defaultResponses, planResponses } from "../bands/responses.js";
 import { responseUnit } from "../bands/units.js";
+import { usageFault } from "../base/errors.js";
+import { productVersion } from "../base/version.js";
 import {
   type ColumnCurves,
   columnTable,
@@ -12,13 +12,12 @@ import {
   type SpectraFacts,
   spreadCurves,
 } from "../curves/assemble.js";
+import { type RefinedErrors, type RefinedFacts, refinedCurves, refinedErrors } from "../curves/refined.js";
 import type { CurvesResult, ResponseCurve, Table } from "../curves/result.js";
-import { type RefinedErrors, refinedCurves, refinedErrors } from "../curves/refined.js";
 import { cutTasks, type RefineJob, type SweepJob } from "../engine/job.js";
 import { resolvedEnergy } from "../engine/mesh-step.js";
 import { planRefinement } from "../engine/refine-plan.js";
 import { counters } from "../engine/refiner.js";
-import { countBelow, type ReferenceLevel, referenceLevel } from "./reference.js";
 import { type RunOptions, runTasks } from "../engine/run.js";
 import type { GridFacts } from "../grid/grid.js";
 import { openGrid } from "../grid/open.js";
@@ -26,6 +25,7 @@ import { planAxis } from "../spectrum/axis.js";
 import type { Sections } from "../spectrum/sections.js";
 import { cellArea, cellVolume } from "../zone/lattice.js";
 import { smallestSubMeshes, spreadSubMeshes } from "../zone/mesh.js";
+import { countBelow, type ReferenceLevel, referenceLevel } from "./reference.js";
 
 /** Options of a sweep; the same object is what a job file holds and what every result embeds. */
 export const sweepOptions = z.strictObject({
@@ -96,11 +96,12 @@ interface Computed {
 const marginForDefect = 2.5;
 
 /** Samples that may be spent where the user names no number. */
-const defaultSamples = (points: number): number => 1_000_000 + 30 * points;
+const defaultSamples = (points: number): number => 200_000 + 100 * points;
 
 async function compute({ job, facts, options, regularEv }: SweepPlan, run: RunOptions): Promise<Computed> {
   const tasks = cutTasks(facts.points);
-  if (job.method !== "refine") return { sections: await runTasks({ kind: "mesh", job }, tasks, run), refined: undefined };
+  if (job.method !== "refine")
+    return { sections: await runTasks({ kind: "mesh", job }, tasks, run), refined: undefined };
   const quiet = { workers: run.workers, signal: run.signal };
   const survey = await runTasks({ kind: "survey", job, regularEv }, tasks, quiet);
   const wish = { accuracy: options.accuracy, samples: options.samples ?? defaultSamples(facts.points) };
@@ -126,10 +127,15 @@ function spectraFacts({ job, facts }: SweepPlan): SpectraFacts {
   };
 }
 
+const refinedFacts = (planned: SweepPlan): RefinedFacts => {
+  const { hessian, bands } = planned.facts;
+  return { ...spectraFacts(planned), regularEv: planned.regularEv, hessian, bands };
+};
+
 /** Error bars by cause, zone means. */
-function errorCurves(planned: SweepPlan, { sections, refined }: Computed): RefinedErrors {
+function errorCurves(planned: SweepPlan, { sections, refined }: Computed, curves: ColumnCurves): RefinedErrors {
   const known = spectraFacts(planned);
-  if (refined !== undefined) return refinedErrors(sections, { ...known, regularEv: refined.regularEv });
+  if (refined !== undefined) return refinedErrors(sections, refinedFacts(planned), curves);
   const sampling = spreadCurves(sections, planned.job.method, known);
   return { sampling, model: sampling.map((rows) => rows.map((row) => new Float64Array(row.length))) };
 }
@@ -137,7 +143,7 @@ function errorCurves(planned: SweepPlan, { sections, refined }: Computed): Refin
 function responseCurves(planned: SweepPlan, computed: Computed, curves: ColumnCurves): ResponseCurve[] {
   const { job, facts, options } = planned;
   const points = job.method === "points" ? curves : occupiedCurves(computed.sections, "points", spectraFacts(planned));
-  const errors = errorCurves(planned, computed);
+  const errors = errorCurves(planned, computed, curves);
   return job.plan.columns.map(({ name, carrier }, column): ResponseCurve => {
     const { unit, factor } = unitOf(carrier, facts, options);
     const sampling = columnTable(errors.sampling, column, Math.abs(factor));
@@ -174,6 +180,22 @@ function densityPerCell({ periodic, vectorsA }: GridFacts): number {
   return periodic === 3 ? 1e24 / cellVolume(vectorsA) : 1e16 / cellArea(vectorsA);
 }
 
+/** What limits a refinement on this grid, and how that shows. */
+function refinementNotes(facts: GridFacts): string[] {
+  const notes: string[] = [];
+  if (facts.hessian === "none")
+    notes.push("no second derivatives are stored: local models are of lower order, and the error bar is wider");
+  if (smallestSubMeshes(facts) === undefined)
+    notes.push(
+      "the mesh contains no regular sub-mesh (its divisions share no factor 2, 3 or 5): the model error is a part of the neighbour defect",
+    );
+  if (facts.hessian === "free-electron")
+    notes.push(
+      "bands cut from plane waves: where the level comes near the highest stored band, the error bar is doubled",
+    );
+  return notes;
+}
+
 function notesOf({ job, facts, reference, options }: SweepPlan): string[] {
   const notes = [
     intrinsicOnly,
@@ -181,8 +203,10 @@ function notesOf({ job, facts, reference, options }: SweepPlan): string[] {
     `pairs of bands closer than ${options.degenerate} eV are taken as degenerate`,
   ];
   if (options.broaden > 0) notes.push(`denominators are broadened by ${options.broaden} eV`);
-  if (job.method === "cells") notes.push(`energy resolution at 0 K: ${(job.axis.nodes.stepEv * 1000).toPrecision(3)} meV`);
-  if (smallestSubMeshes(facts) === undefined)
+  if (job.method === "cells")
+    notes.push(`energy resolution at 0 K: ${(job.axis.nodes.stepEv * 1000).toPrecision(3)} meV`);
+  if (job.method === "refine") notes.push(...refinementNotes(facts));
+  else if (spreadSubMeshes(facts) === undefined)
     notes.push("no error bar: the mesh contains no regular sub-mesh (its divisions share no factor 2, 3 or 5)");
   return notes;
 }
@@ -212,9 +236,8 @@ function assembleResult(planned: SweepPlan, computed: Computed): CurvesResult {
   const { job, facts, reference, options } = planned;
   const { sections } = computed;
   const known = spectraFacts(planned);
-  const { refined } = computed;
-  const curves = refined
-    ? refinedCurves(sections, { ...known, regularEv: refined.regularEv })
+  const curves = computed.refined
+    ? refinedCurves(sections, refinedFacts(planned))
     : occupiedCurves(sections, job.method, known);
   const levels = Array.from(job.axis.levelsEv, (_, i) =>
     options.points === 1 ? options.from : options.from + (i * (options.to - options.from)) / (options.points - 1),

@@ -3,8 +3,8 @@
 import { hbar2OverMeEvA2 } from "../../src/base/constants.js";
 import type { HessianKind } from "../../src/grid/grid.js";
 import { createEigensolver } from "../../src/kernel/eigen.js";
-import type { PointRef } from "../../src/kernel/kernel.js";
 import { hessianIndex } from "../../src/kernel/hamiltonian.js";
+import type { PointRef } from "../../src/kernel/kernel.js";
 import { combine, diagonalMatrix, randomHermitian, rotate } from "./hermitian.js";
 import { referTo } from "./points.js";
 

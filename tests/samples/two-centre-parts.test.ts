@@ -4,7 +4,7 @@ import { describe, expect, it } from "vitest";
 import { Fault } from "../../src/base/errors.js";
 import type { Triple } from "../../src/grid/grid.js";
 import { checkTwoCentreFile, readTwoCentreFile } from "../../src/samples/two-centre-file.js";
-import { bondBlock, integralNames, type IntegralName } from "../../src/samples/two-centre-integrals.js";
+import { bondBlock, type IntegralName, integralNames } from "../../src/samples/two-centre-integrals.js";
 import { diagonaliseReal9 } from "../../src/samples/two-centre-jacobi.js";
 import { halfShell, latticeVectors } from "../../src/samples/two-centre-lattice.js";
 import { orbitalMatrices, spinMatrices, spinOrbitMatrix } from "../../src/samples/two-centre-orbitals.js";
