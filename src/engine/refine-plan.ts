@@ -27,8 +27,9 @@ const firstSplit = 1;
 const mostAttempts = 6;
 const goldenPart = (Math.sqrt(5) - 1) / 2;
 const depthLimit = 14;
-/** No cell may take more than this many times its equal share of the samples. */
-const greed = 16;
+/** No cell may take more than this many times its equal share of the samples, nor more than the whole divided by `leastCells`. */
+const greed = 256;
+const leastCells = 8;
 const probes = 48;
 
 /** Tolerated error of each column in zone-mean units: accuracy times the largest regularised value in the window. */
@@ -91,7 +92,7 @@ export function planRefinement(
   const share = wish.samples / facts.points;
   const tolerance = tolerances(job, facts, survey, wish.accuracy);
   let splitAbove = firstSplit / Math.sqrt(facts.points);
-  const samplesPerCell = Math.max(8, Math.ceil(Math.min(greed, Math.sqrt(facts.points)) * share));
+  const samplesPerCell = Math.max(8, Math.ceil(Math.min(greed * share, wish.samples / leastCells)));
   const settings = (): RefineJob => ({ ...job, regularEv, tolerance, splitAbove, depthLimit, samplesPerCell });
   for (let attempt = 0; attempt < mostAttempts; attempt++) {
     const { cost, spread } = probe(settings(), facts);

@@ -9,6 +9,8 @@ const nodesPerThermalEnergy = 8;
 /** Nodes per level step where zero temperature is asked: the stated energy resolution of `cells` and `refine`. */
 const nodesPerLevel = 4;
 const mostNodes = 200_000;
+/** A single level is resolved at 0 K as if its neighbours were this far away. */
+const singleLevelStepEv = 0.001;
 
 /** Uniform nodes in absolute energy (eV). */
 export interface NodeAxis {
@@ -45,7 +47,7 @@ export const nodeEv = (axis: NodeAxis, i: number): number => axis.startEv + i * 
 export function planAxis(window: Window, temperaturesK: readonly number[], leastMarginEv = 0): LevelAxis {
   const { fromEv, toEv, points } = window;
   const single = points === 1;
-  const levelStep = single ? 0.01 : (toEv - fromEv) / (points - 1);
+  const levelStep = single ? singleLevelStepEv : (toEv - fromEv) / (points - 1);
   const warm = temperaturesK.filter((t) => t > 0).map((t) => t * boltzmannEvPerK);
   const lowest = warm.length > 0 ? Math.min(...warm) : Number.POSITIVE_INFINITY;
   const cold = warm.length < temperaturesK.length;

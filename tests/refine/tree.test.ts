@@ -1,0 +1,232 @@
+// tree.test.ts: does the tree integrate functions to their closed forms, and spend no more samples than it needs or may?
+import fc from "fast-check";
+import { describe, expect, it } from "vitest";
+
+import { createTree, type Sample, type TreeCost } from "../../src/refine/tree.js";
+import { createRandom } from "../kernel/hermitian.js";
+
+interface Value extends Sample {
+  value: number;
+}
+
+type Field = (t: Float64Array) => number;
+
+interface Wish {
+  readonly dimension: 2 | 3;
+  readonly depthLimit?: number;
+  readonly sampleLimit?: number;
+  /** Largest |parent - mean of children| times volume that is let pass. */
+  readonly tolerance: number;
+}
+
+interface Found {
+  readonly integral: number;
+  readonly cost: TreeCost;
+  readonly evaluated: number;
+  readonly created: number;
+}
+
+/** Integral over the cell with Richardson's weights, as a refined sweep takes it: resolved families 4/3 children - 1/3 parent. */
+function integrate(field: Field, { dimension, depthLimit = 14, sampleLimit = 1e6, tolerance }: Wish): Found {
+  let [integral, evaluated, created] = [0, 0, 0];
+  const mean = (children: readonly Value[]): number =>
+    children.reduce((sum, { value }) => sum + value, 0) / 2 ** dimension;
+  const tree = createTree<Value>({
+    dimension,
+    depthLimit,
+    create: () => {
+      created++;
+      return { t: new Float64Array(dimension), value: 0 };
+    },
+    evaluate: (sample) => {
+      evaluated++;
+      sample.value = field(sample.t);
+    },
+    disagrees: ({ parent, children, depth }) =>
+      Math.abs(parent.value - mean(children)) * 2 ** (-dimension * depth) > tolerance,
+    accept: ({ parent, children, depth }, resolved) => {
+      const volume = 2 ** (-dimension * depth);
+      integral += volume * (resolved ? (4 * mean(children) - parent.value) / 3 : mean(children));
+    },
+  });
+  const t = new Float64Array(dimension);
+  const cost = tree({ t, value: field(t) }, sampleLimit);
+  return { integral, cost, evaluated, created };
+}
+
+// Closed forms over [-1/2, 1/2]^d.
+const slopes = [1, -2, 0.5];
+const smooth: Field = (t) => Math.exp(t.reduce((sum, x, j) => sum + slopes[j] * x, 0));
+const smoothIntegral = (dimension: number): number =>
+  slopes.slice(0, dimension).reduce((product, a) => (product * 2 * Math.sinh(a / 2)) / a, 1);
+/** The flux of a monopole at height D above a square: D / r^3. */
+const monopole =
+  (height: number, [x, y]: readonly [number, number] = [0, 0]): Field =>
+  (t) =>
+    height / ((t[0] - x) ** 2 + (t[1] - y) ** 2 + height * height) ** 1.5;
+/** Solid angle under which the square is seen from there: a corner's share is atan(x y / (D sqrt(x^2 + y^2 + D^2))). */
+function solidAngle(height: number, [x, y]: readonly [number, number] = [0, 0]): number {
+  const corner = (a: number, b: number): number => Math.atan((a * b) / (height * Math.hypot(a, b, height)));
+  const [right, left, up, down] = [0.5 - x, 0.5 + x, 0.5 - y, 0.5 + y];
+  return corner(right, up) + corner(left, up) + corner(right, down) + corner(left, down);
+}
+/** Product of Lorentzians of half width w, and its integral. */
+const lorentzians =
+  (w: number): Field =>
+  (t) =>
+    t.reduce((product, x) => product / (x * x + w * w), 1);
+const lorentzIntegral = (w: number, dimension: number): number => ((2 / w) * Math.atan(0.5 / w)) ** dimension;
+
+describe("integrals over one cell", () => {
+  for (const dimension of [2, 3] as const) {
+    it(`${dimension}D, smooth: one family is of fourth order, exact for cubics; ${2 ** dimension} samples`, () => {
+      const cubic: Field = (t) => 1 + t[0] - 2 * t[0] ** 2 + 3 * t[1] ** 3 + t[0] * t[1] + 5 * t[dimension - 1] ** 2;
+      const { integral, cost, evaluated } = integrate(cubic, { dimension, tolerance: 1 });
+      // The mean of t^2 over [-1/2, 1/2] is 1/12.
+      expect(integral).toBeCloseTo(1 + (5 - 2) / 12, 14);
+      expect(cost).toEqual({ samples: 2 ** dimension, deepest: 1, unresolved: 0 });
+      expect(evaluated).toBe(2 ** dimension);
+    });
+
+    it(`${dimension}D, smooth: errs by less than the tolerance, and by 1/16 with every halving of the cells`, () => {
+      const errors = [1, 2, 3].map((depthLimit) => {
+        const full = integrate(smooth, { dimension, tolerance: 0, depthLimit });
+        expect(full.cost.deepest).toBe(depthLimit);
+        // Every family ends at the limit, and none counts as resolved: midpoint sums, to be extrapolated here.
+        return full.integral;
+      });
+      const exact = smoothIntegral(dimension);
+      const [first, second] = [(4 * errors[1] - errors[0]) / 3 - exact, (4 * errors[2] - errors[1]) / 3 - exact];
+      expect(first / second).toBeGreaterThan(14);
+      expect(first / second).toBeLessThan(18);
+      for (const tolerance of [1e-2, 1e-3, 1e-4, 1e-5]) {
+        const { integral } = integrate(smooth, { dimension, tolerance });
+        expect(Math.abs(integral - exact)).toBeLessThan(tolerance);
+      }
+    });
+  }
+
+  it("2D: the flux of a monopole close above the plane, at samples that grow like log(1/D)", () => {
+    const samples = [1e-1, 1e-2, 1e-3, 1e-4].map((height) => {
+      const at = [0.1234, -0.2345] as const;
+      const found = integrate(monopole(height, at), { dimension: 2, tolerance: 1e-3, depthLimit: 30 });
+      expect(Math.abs(found.integral / solidAngle(height, at) - 1)).toBeLessThan(2e-3);
+      expect(found.cost.unresolved).toBe(0);
+      expect(found.cost.samples).toBe(found.evaluated);
+      return found.cost.samples;
+    });
+    // 10 times closer costs 3.3 more depths: a constant number of samples each.
+    expect(samples[3] - samples[2]).toBeLessThan(1.5 * (samples[1] - samples[0]) + 40);
+    expect(samples[3]).toBeLessThan(3000);
+  });
+
+  it("3D: a peak a hundredth of the cell wide to 1e-3, at a hundredth of the uniform mesh's samples", () => {
+    const exact = lorentzIntegral(0.01, 3);
+    const { integral, cost } = integrate(lorentzians(0.01), { dimension: 3, tolerance: 1e-6 * exact });
+    expect(Math.abs(integral / exact - 1)).toBeLessThan(1e-3);
+    expect(cost.samples).toBeLessThan(8 ** cost.deepest / 100);
+  });
+});
+
+describe("limits", () => {
+  it("ends at the depth limit: every box once, and each last family told as unresolved", () => {
+    for (const dimension of [2, 3] as const)
+      for (const depthLimit of [1, 2, 4]) {
+        const { cost, evaluated } = integrate(() => 1, { dimension, depthLimit, tolerance: -1 });
+        const boxes = (depth: number): number => 2 ** (dimension * depth);
+        let samples = 0;
+        for (let depth = 1; depth <= depthLimit; depth++) samples += boxes(depth);
+        expect(cost).toEqual({ samples, deepest: depthLimit, unresolved: boxes(depthLimit - 1) });
+        expect(evaluated).toBe(samples);
+      }
+  });
+
+  it("ends all branches at the sample limit: no more than the open families of one path beyond it, and the whole cell covered", () => {
+    for (const dimension of [2, 3] as const)
+      for (const sampleLimit of [0, 1, 10, 100, 1000, 5000]) {
+        const depthLimit = 12;
+        const found = integrate(() => 1, { dimension, depthLimit, tolerance: -1, sampleLimit });
+        const open = 2 ** dimension * 2 ** dimension * depthLimit;
+        expect(found.cost.samples).toBeLessThanOrEqual(sampleLimit + open);
+        expect(found.cost.samples).toBeGreaterThanOrEqual(Math.min(sampleLimit, 2 ** dimension));
+        expect(found.cost.unresolved).toBeGreaterThan(0);
+        expect(found.integral).toBeCloseTo(1, 12);
+      }
+  });
+
+  it("keeps one row of children per depth, also over many cells", () => {
+    for (const dimension of [2, 3] as const)
+      for (const tolerance of [-1, 1e-4]) {
+        const { created, cost } = integrate(monopole(0.02), { dimension, tolerance, depthLimit: 5 });
+        expect(created).toBe(2 ** dimension * cost.deepest);
+      }
+    let created = 0;
+    const tree = createTree({
+      dimension: 3,
+      depthLimit: 3,
+      create: () => {
+        created++;
+        return { t: new Float64Array(3) };
+      },
+      evaluate: () => {},
+      disagrees: () => true,
+      accept: () => {},
+    });
+    for (let cell = 0; cell < 20; cell++) tree({ t: new Float64Array(3) }, 1000);
+    expect(created).toBe(3 * 8);
+  });
+});
+
+describe("boxes", () => {
+  /** A tree that halves at random; what it accepted, and every call in order. */
+  function wander(dimension: 2 | 3, seed: number, sampleLimit: number) {
+    const random = createRandom(seed);
+    const calls: string[] = [];
+    const boxes: { t: number[]; depth: number }[] = [];
+    const tree = createTree({
+      dimension,
+      depthLimit: 6,
+      create: () => ({ t: new Float64Array(dimension) }),
+      evaluate: ({ t }) => calls.push(`evaluate ${[...t]}`),
+      disagrees: ({ parent, depth }) => {
+        calls.push(`disagrees ${depth} ${[...parent.t]}`);
+        return random() < 0.4;
+      },
+      accept: ({ parent, children, depth }, resolved) => {
+        calls.push(`accept ${depth} ${resolved} ${[...parent.t]}`);
+        for (const { t } of children) boxes.push({ t: [...t], depth: depth + 1 });
+      },
+    });
+    const cost = tree({ t: new Float64Array(dimension) }, sampleLimit);
+    return { boxes, calls, cost };
+  }
+  const choice = fc.tuple(fc.constantFrom(2 as const, 3 as const), fc.integer({ min: 1, max: 1e6 }), fc.nat(400));
+
+  it("what is accepted fills the cell once, without overlap", () => {
+    fc.assert(
+      fc.property(choice, ([dimension, seed, sampleLimit]) => {
+        const { boxes } = wander(dimension, seed, sampleLimit);
+        expect(boxes.reduce((sum, { depth }) => sum + 2 ** (-dimension * depth), 0)).toBe(1);
+        const point = createRandom(seed + 1);
+        for (let trial = 0; trial < 20; trial++) {
+          const x = Array.from({ length: dimension }, () => point() / 2);
+          const holding = boxes.filter(({ t, depth }) => t.every((c, j) => Math.abs(x[j] - c) <= 2 ** -depth / 2));
+          expect(holding).toHaveLength(1);
+        }
+      }),
+      { numRuns: 60 },
+    );
+  });
+
+  it("the order of calls depends on the cell alone; samples are counted one by one", () => {
+    fc.assert(
+      fc.property(choice, ([dimension, seed, sampleLimit]) => {
+        const [first, second] = [wander(dimension, seed, sampleLimit), wander(dimension, seed, sampleLimit)];
+        expect(second.calls).toEqual(first.calls);
+        expect(first.cost.samples).toBe(first.calls.filter((call) => call.startsWith("evaluate")).length);
+        expect(first.cost.unresolved).toBe(first.calls.filter((call) => /^accept \d+ false/.test(call)).length);
+      }),
+      { numRuns: 40 },
+    );
+  });
+});
