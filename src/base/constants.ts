@@ -10,8 +10,6 @@ export const rydbergEv = hartreeEv / 2;
 export const bohrA = 0.529177210544;
 /** Conductance e^2/hbar, siemens: 2 pi / (25812.80745... ohm), exact through e and h. */
 export const e2OverHbarS = 2.434134805788e-4;
-/** von Klitzing constant h/e^2, ohm. */
-export const vonKlitzingOhm = 25812.80745;
 /** hbar^2 / m_e in eV angstrom^2: hartree times bohr^2. */
 export const hbar2OverMeEvA2 = hartreeEv * bohrA * bohrA;
 /** hbar in eV s (exact in the SI, rounded). */
@@ -20,5 +18,3 @@ export const hbarEvS = 6.582119569e-16;
 export const hbarMetrePerSecondEvA = hbarEvS * 1e10;
 /** 1/angstrom in 1/cm. */
 export const perAngstromInPerCm = 1e8;
-/** Elementary charge, coulomb (exact). */
-export const elementaryChargeC = 1.602176634e-19;

@@ -84,7 +84,5 @@ export const manifestSchema = z.strictObject({
 export type Manifest = z.output<typeof manifestSchema>;
 /** The entry of one array, whatever its role. */
 export type ArrayEntry = Omit<z.output<ReturnType<typeof arraySchema>>, "unit"> & { readonly unit: string };
-/** The entry of one moment. */
-export type MomentEntry = z.output<typeof momentSchema>;
 export type NumberType = (typeof numberTypes)[number];
 export type Axis = (typeof axisNames)[number];

@@ -1,0 +1,22 @@
+// index.ts: the public API: what a program that uses tidegauge as a library may import.
+export { Fault, type FaultKind, isFault } from "./base/errors.js";
+export type { CurvesResult, ResponseCurve, Table } from "./curves/result.js";
+export type { RunOptions } from "./engine/run.js";
+export type { Block, BlockReader, GridFacts, MatrixBlock, MomentFacts, Triple, Want } from "./grid/grid.js";
+export { type Grid, openGrid } from "./grid/open.js";
+export { openReader, viewOf } from "./grid/reader.js";
+export {
+  createGridWriter,
+  type GridDescription,
+  type GridLayout,
+  type GridWriter,
+  type PointData,
+} from "./grid/writer.js";
+export { curvesCsv } from "./report/csv.js";
+export { curvesJson } from "./report/json.js";
+export { curvesSvg } from "./report/svg/curves.js";
+export { curvesText } from "./report/text.js";
+export { buildSample, sampleCatalogue } from "./samples/catalogue.js";
+export { writeSample } from "./samples/write.js";
+export { inspect, inspectOptions } from "./studies/inspect.js";
+export { type SweepOptions, sweep, sweepOptions } from "./studies/sweep.js";
