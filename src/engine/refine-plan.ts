@@ -24,7 +24,7 @@ const absoluteFloor = 1e-4;
 const samplingShare = 0.3;
 /** First guess: families let pass err at random, so that the sum over N cells of errors below s is about s sqrt(N). */
 const firstSplit = 1;
-const mostAttempts = 6;
+const mostAttempts = 8;
 const goldenPart = (Math.sqrt(5) - 1) / 2;
 const depthLimit = 14;
 /** No cell may take more than this many times its equal share of the samples, nor more than the whole divided by `leastCells`. */
@@ -94,12 +94,13 @@ export function planRefinement(
   let splitAbove = firstSplit / Math.sqrt(facts.points);
   const samplesPerCell = Math.max(8, Math.ceil(Math.min(greed * share, wish.samples / leastCells)));
   const settings = (): RefineJob => ({ ...job, regularEv, tolerance, splitAbove, depthLimit, samplesPerCell });
+  let limited = false;
   for (let attempt = 0; attempt < mostAttempts; attempt++) {
     const { cost, spread } = probe(settings(), facts);
     if (cost > share) {
-      splitAbove *= Math.max(1.5, cost / share);
-      if (attempt > 0) break;
-    } else if (spread > samplingShare) splitAbove *= Math.max(0.2, (0.8 * samplingShare) / spread);
+      limited = true;
+      splitAbove *= Math.max(1.5, (cost / share) ** 1.5);
+    } else if (!limited && spread > samplingShare) splitAbove *= Math.max(0.2, (0.8 * samplingShare) / spread);
     else break;
   }
   return settings();
