@@ -136,8 +136,7 @@ describe("spin-orbit coupling", () => {
     for (const n of [2, 3]) expect(Math.abs(e[n] + expected)).toBeLessThan(1e-9);
   });
 
-  it("is that of the heavier atom more: GaAs between plane waves has both parts", () => {
-    // Linear-in-wave-vector splitting needs no inversion centre: along [110] every band is split, along [100] none.
+  it("splits the levels of a crystal without inversion centre along [110] and none along [100] (Dresselhaus 1955)", () => {
     const split = levels(gaas, [0.2, 0.2, 0]);
     expect(Math.abs(split[6] - split[7])).toBeGreaterThan(1e-3);
     const pairs = levels(gaas, [0.2, 0, 0]);
