@@ -5,11 +5,14 @@ import { openReader } from "../grid/reader.js";
 import { createPairPass } from "../kernel/pair.js";
 import { cellEdges } from "../zone/mesh.js";
 import { walkPoints } from "./blocks.js";
+import { averageSlopes } from "./local-sampler.js";
 import { spanWidths } from "./pass.js";
 
 const mostPoints = 256;
 /** Bands this far outside the window still count: they are what the window's bands couple to. */
 const marginEv = 2;
+/** Bands this close take their mean slope: their own depends on the basis that the file happens to hold. */
+const togetherEv = 1e-5;
 /** The part of a band's span over one step that neighbouring stored points still resolve between them. */
 const resolvedPart = 0.8;
 /** Where no band crosses the window, or none is sloped. */
@@ -31,6 +34,7 @@ export function resolvedEnergy(facts: GridFacts, fromEv: number, toEv: number): 
   for (let first = 0; first < facts.points; first += stride)
     walkPoints(reader, { first, count: 1 }, [], (_flat, point) => {
       pass.slopes(point, slope);
+      averageSlopes(point.energyEv.subarray(point.energyOffset, point.energyOffset + facts.bands), slope, togetherEv);
       for (let band = 0; band < facts.bands; band++) {
         const energy = point.energyEv[point.energyOffset + band];
         if (energy < fromEv - marginEv || energy > toEv + marginEv) continue;
