@@ -11,13 +11,13 @@ const [blue, orange] = temperatureColours(2);
 const edgePx = 16;
 const ticksPx = 50;
 
-/** A tick of a logarithmic axis: plain between a thousandth and a thousand, a power of ten elsewhere; only decades are told. */
-function decade(value) {
-  const power = Math.log10(value);
-  if (Math.abs(power - Math.round(power)) > 1e-9) return "";
-  if (Math.abs(power) < 3.5) return String(Number(value.toPrecision(1)));
-  return `10${superscript(Math.round(power))}`;
-}
+/** Ticks of a logarithmic axis, decades only: plain numbers from a thousandth up where the axis ends by 10,000, else powers of ten. */
+const decadeOn = (domain) => (value) => {
+  const power = Math.round(Math.log10(value));
+  if (Math.abs(Math.log10(value) - power) > 1e-9) return "";
+  if (power >= -3 && power < 3 + (domain[1] <= 1e4 ? 1 : 0)) return String(Number(value.toPrecision(1)));
+  return `10${superscript(power)}`;
+};
 
 /** Powers of ten inside a range, all or every second one. */
 function decades([low, high]) {
@@ -44,7 +44,7 @@ function panel({ heading, left, top, widthPx, heightPx, x, y, marks, xLabel }) {
   const ticks = { tickSize: 4, tickPadding: 4, label: null, color: tone.faint };
   const xTicks = x.ticks ?? (x.type === "log" ? decades(x.domain) : 9);
   const yTicks = y.type === "log" ? decades(y.domain) : 5;
-  const format = (axis) => axis.format ?? (axis.type === "log" ? decade : undefined);
+  const format = (axis) => axis.format ?? (axis.type === "log" ? decadeOn(axis.domain) : undefined);
   const scale = ({ type = "linear", domain, reverse = false }) => ({ type, domain, reverse, axis: null });
   const svg = Plot.plot({
     document,
@@ -64,7 +64,9 @@ function panel({ heading, left, top, widthPx, heightPx, x, y, marks, xLabel }) {
   });
   const inner = String(svg.innerHTML)
     .replace(/<style>[\s\S]*?<\/style>/g, "")
-    .replace(/-?\d+\.\d{3,}/g, (number) => String(Number(Number(number).toFixed(2))));
+    .replace(/ [\w-]+="[^"]*"/g, (attribute) =>
+      attribute.replace(/-?\d+\.\d{3,}/g, (number) => String(Number(Number(number).toFixed(2)))),
+    );
   const style = { sizePx: 11, colour: tone.faint };
   return [
     textLine(heading, left, top - 9, { sizePx: 12, colour: tone.ink, bold: true }),
@@ -288,7 +290,7 @@ function layerPicture({ rows }) {
         plain: row.truth + shown(Math.abs(row.plain - row.truth)),
       }));
     return panel({
-      heading: `level ${level} eV`,
+      heading: `level ${String(level).replace("-", "−")} eV`,
       left: edgePx + ticksPx - 14 + (at % 3) * 244,
       top: 104 + Math.floor(at / 3) * 262,
       widthPx: 192,
@@ -299,7 +301,10 @@ function layerPicture({ rows }) {
       xLabel: "stored mesh",
     });
   });
-  const said = textLine("orbital:xy:z, error in e/2π", edgePx, 68, { sizePx: 11, colour: tone.faint });
+  const said = textLine("orbital:xy:z, error in e/2π; errors below 10⁻⁷ stand on the lower edge", edgePx, 68, {
+    sizePx: 11,
+    colour: tone.faint,
+  });
   return picture({
     title: "s and p layer whose p bands touch, kT = 0.05 eV: error against the stored mesh",
     key: errorKey,

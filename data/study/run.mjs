@@ -1,12 +1,14 @@
 // run.mjs: how near to the truth does `sweep` come on three systems whose truth is known?
-// node data/study/run.mjs [gold] [accuracy] [curve] [dirac] [layer] [pictures]: the stages named, or all of them. Each stage replaces
-// its part of results.json; the pictures are drawn from results.json alone. One worker, so that nothing else on the machine suffers.
+// node data/study/run.mjs [gold] [accuracy] [curve] [dirac] [layer] [page]: the stages named, or all of them. Each stage replaces
+// its part of results.json; the pictures and the tables of README.md are made from results.json alone. One worker: the machine stays
+// usable, and the numbers do not depend on it.
 import { spawnSync } from "node:child_process";
 import { existsSync, mkdtempSync, readFileSync, rmSync, writeFileSync } from "node:fs";
 import { tmpdir } from "node:os";
 import { join } from "node:path";
 import { fileURLToPath } from "node:url";
 import { drawPictures } from "./charts.mjs";
+import { renewTables } from "./tables.mjs";
 
 const repository = fileURLToPath(new URL("../..", import.meta.url));
 const here = fileURLToPath(new URL(".", import.meta.url));
@@ -174,4 +176,5 @@ for (const [name, compute] of Object.entries(stages)) {
   writeFileSync(resultsFile, `${JSON.stringify(results, null, 1)}\n`);
   process.stderr.write(`${name}: ${((Date.now() - begun) / 1000).toFixed(0)} s\n`);
 }
-if (asked.length === 0 || asked.includes("pictures")) drawPictures(results, here);
+drawPictures(results, here);
+renewTables(results, here);
