@@ -27,8 +27,7 @@ describe("a platinum-like metal, refined from 12^3", () => {
         ...more,
       ])) as CurvesResult;
     const plain = await at(0, ["--method", "points", "--temperature", 300]);
-    // An accuracy of 3%: a third of the samples that 1% takes.
-    const asked = ["--response", "spin:xy:z", "orbital:xy:z", "--temperature", 10, 300, "--accuracy", 0.03];
+    const asked = ["--response", "spin:xy:z", "orbital:xy:z", "--temperature", 10, 300];
     const { responses } = await at(dense.reference_eV - plain.reference_eV, asked);
     for (const [i, name] of (["spin_hall", "orbital_hall"] as const).entries()) {
       const { value, error } = responses[i];
