@@ -165,7 +165,8 @@ function goldPicture({ rows, truth }) {
   });
 }
 
-function curvePicture({ levelEv, spin, orbital }) {
+function curvePicture({ runs }) {
+  const { levelEv, spin, orbital, accuracy } = runs[0];
   const panels = [spin, orbital].map((moment, at) => {
     const rows = levelEv.map((level, i) => {
       const { value, bar, plain, truth } = moment;
@@ -178,8 +179,8 @@ function curvePicture({ levelEv, spin, orbital }) {
         truth: truth[i],
       };
     });
-    const all = rows.flatMap(({ low, high, truth }) => [low, high, truth]);
-    const [low, high] = [Math.min(0, ...all), Math.max(...all)];
+    const all = rows.flatMap(({ low, high, truth, plain }) => [low, high, truth, plain]);
+    const [low, high] = [Math.min(...all), Math.max(...all)];
     const x = (row) => row.level;
     return panel({
       heading: `${["spin", "orbital"][at]}:xy:z in (ħ/e) S/cm`,
@@ -188,7 +189,7 @@ function curvePicture({ levelEv, spin, orbital }) {
       widthPx: 690,
       heightPx: 190,
       x: { domain: [levelEv[0], levelEv[levelEv.length - 1]] },
-      y: { domain: [low - 0.04 * (high - low), high + 0.06 * (high - low)] },
+      y: { domain: [low - 0.06 * (high - low), high + 0.06 * (high - low)] },
       marks: [
         Plot.areaY(rows, { x, y1: (row) => row.low, y2: (row) => row.high, fill: blue, fillOpacity: 0.18 }),
         Plot.lineY(rows, { x, y: (row) => row.plain, stroke: orange, strokeWidth: 1.2, strokeDasharray: "4 3" }),
@@ -199,13 +200,13 @@ function curvePicture({ levelEv, spin, orbital }) {
     });
   });
   const key = [
-    ["line", blue, "refined, 12³ stored points"],
+    ["line", blue, "refined"],
     ["area", blue, "one bar"],
     ["dashed", orange, "plain sum, the same points"],
     ["dots", tone.ink, "dense reference"],
   ];
   return picture({
-    title: "Gold at 300 K: the curve from 12³ stored points",
+    title: `Gold at 300 K: the curve from 12³ stored points, --accuracy ${accuracy}`,
     key,
     widthPx: 760,
     heightPx: 566,

@@ -38,14 +38,27 @@ const accuracy = ({ accuracy: { rows }, gold: { truth } }) =>
     rows.map((row) => [row.accuracy, ...goldCells(row, truth).filter((_, i) => i % 3 !== 2), grouped(row.samples)]),
   );
 
-const curve = ({ curve: { spin, orbital } }) =>
+const curve = ({ curve: { runs } }) =>
   table(
-    ["in % of the curve's maximum", "rms error", "mean bar", "plain sum's rms error", "within 1 bar", "within 2 bars"],
-    Object.entries({ spin, orbital }).map(([moment, found]) => [
-      `${moment}:xy:z (${found.largest.toFixed(0)})`,
-      ...[found.rms, found.meanBar, found.rmsPlain].map((share) => percent(share)),
-      ...[found.withinOneBar, found.withinTwoBars].map((share) => `${Math.round(share * 41)} of 41`),
-    ]),
+    [
+      "response (its maximum)",
+      "`--accuracy`",
+      "rms error",
+      "mean bar",
+      "plain sum's rms error",
+      "within 1 bar",
+      "within 2 bars",
+      "samples",
+    ],
+    ["spin", "orbital"].flatMap((moment) =>
+      runs.map(({ accuracy, samples, [moment]: found }) => [
+        `${moment}:xy:z (${found.largest.toFixed(0)})`,
+        accuracy,
+        ...[found.rms, found.meanBar, found.rmsPlain].map((share) => percent(share)),
+        ...[found.withinOneBar, found.withinTwoBars].map((share) => `${Math.round(share * 41)} of 41`),
+        grouped(samples),
+      ]),
+    ),
   );
 
 const dirac = ({ dirac: { rows } }) =>
