@@ -18,6 +18,7 @@ export interface BandSample extends Sample {
 /** A sample to be filled. */
 export const newSample = (facts: GridFacts, columns: number): BandSample => ({
   t: new Float64Array(facts.periodic),
+  centre: new Float64Array(facts.periodic),
   energyEv: new Float64Array(facts.bands),
   slopes: new Float64Array(3 * facts.bands),
   values: new Float64Array(facts.bands * columns),

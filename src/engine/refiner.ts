@@ -3,7 +3,7 @@ import { boltzmannEvPerK } from "../base/constants.js";
 import type { GridFacts, Triple } from "../grid/grid.js";
 import { type Closeness, mayTouch } from "../refine/gaps.js";
 import { createSpectralNorm, type SpectralNorm } from "../refine/indicator.js";
-import { createTree, type Family } from "../refine/tree.js";
+import { createTree, type Family, guessShare } from "../refine/tree.js";
 import { indicatorNodes, type NodeAxis } from "../spectrum/axis.js";
 import type { Sections } from "../spectrum/sections.js";
 import { type BoxSpectrum, createBoxSpectrum } from "./box-spectrum.js";
@@ -16,10 +16,6 @@ import { spanWidths } from "./pass.js";
 export const depthsCounted = 24;
 /** Places in the counters section. */
 export const counters = { samples: 0, defectSamples: 1, splitCells: 2, unresolved: 3, depths: 4 } as const;
-
-/** Weights of Richardson's extrapolation of a family: parent and children err like the square of their size. */
-const childShare = 4 / 3;
-const parentShare = -1 / 3;
 
 /** One mesh to refine: the stored one, or a contained sub-mesh that shows how the model's error falls with the mesh step. */
 export interface RefinerPlan {
@@ -57,9 +53,9 @@ export function createRefiner(plan: RefinerPlan): Refiner {
     create: () => newSample(facts, columns),
     evaluate: (sample) => sampler.evaluate(sample, edges),
     disagrees: judge.disagrees,
-    accept: (family, resolved) => {
+    accept: (family) => {
       judge.accept();
-      depositFamily(family, resolved, facts.periodic, main);
+      depositFamily(family, facts.periodic, main);
     },
   });
   const root = newSample(facts, columns);
@@ -79,6 +75,7 @@ export function createRefiner(plan: RefinerPlan): Refiner {
       defect.add(root, 0, steps.length / 24);
       for (const t of steps) {
         other.t.set(t);
+        other.centre.set(t);
         sampler.evaluateRegular(other, edges);
         defect.add(other, 0, -1 / 24);
       }
@@ -102,12 +99,9 @@ function neighbourSteps(dimension: number): Float64Array[] {
   });
 }
 
-function depositFamily(family: Family<BandSample>, resolved: boolean, dimension: number, main: BoxSpectrum): void {
-  const { parent, children, depth } = family;
+function depositFamily({ children, depth }: Family<BandSample>, dimension: number, main: BoxSpectrum): void {
   const size = 2 ** -depth;
-  const volume = size ** dimension;
-  for (const child of children) main.add(child, size / 2, (volume / children.length) * (resolved ? childShare : 1));
-  if (resolved) main.add(parent, size, volume * parentShare);
+  for (const child of children) main.add(child, size / 2, size ** dimension / children.length);
 }
 
 /** Decides on families, and keeps the squares of what was let pass. */
@@ -116,7 +110,7 @@ function createJudge({ job, facts, edges, points, splitAbove }: RefinerPlan) {
   const nodes = indicatorNodes(job.axis);
   const norm = windowNorm(job, nodes);
   const widths = new Float64Array(edges.length);
-  const closeness = windowCloseness(job, facts, points, edges);
+  const closeness = windowCloseness(job, facts, points, edges, splitAbove);
   const put = ({ energyEv, slopes, values }: BandSample, size: number, weight: number): void => {
     for (let band = 0; band < facts.bands; band++) {
       spanWidths(slopes, band, edges, widths);
@@ -131,7 +125,7 @@ function createJudge({ job, facts, edges, points, splitAbove }: RefinerPlan) {
       const size = 2 ** -depth;
       const volume = size ** facts.periodic / points;
       put(parent, size, -volume);
-      for (const child of children) put(child, size / 2, volume / children.length);
+      for (const child of children) put(child, size / 2, (volume / children.length) * guessShare(parent, child, depth));
       if (norm.take() > splitAbove) return true;
       return children.some((child) => mayTouch(child.energyEv, child.slopes, edges, size / 2, closeness));
     },
@@ -153,7 +147,13 @@ function windowNorm(job: RefineJob, nodes: NodeAxis): SpectralNorm {
 }
 
 /** What two bands that touch unseen could contribute: the flux pi of a Dirac point for a moment 1/2, in the zone's mean. */
-function windowCloseness(job: RefineJob, facts: GridFacts, points: number, edges: readonly Triple[]): Closeness {
+function windowCloseness(
+  job: RefineJob,
+  facts: GridFacts,
+  points: number,
+  edges: readonly Triple[],
+  splitAbove: number,
+): Closeness {
   const { levelsEv, temperaturesK, nodes } = job.axis;
   const { degenerateEv } = job.denominator;
   const responses = job.tolerance.slice(0, -1);
@@ -162,7 +162,9 @@ function windowCloseness(job: RefineJob, facts: GridFacts, points: number, edges
     toEv: levelsEv[levelsEv.length - 1] + 2 * boltzmannEvPerK * Math.max(...temperaturesK),
     degenerateEv,
     blurEv: 4 * boltzmannEvPerK * Math.min(...temperaturesK) + 2 * nodes.stepEv,
-    strictness: zoneFlux(facts.periodic, points, edges) / Math.max(Math.min(...responses), Number.MIN_VALUE),
+    // Where samples are short, families may disagree by more than is tolerated, and unseen touchings may matter by as much.
+    strictness:
+      zoneFlux(facts.periodic, points, edges) / (Math.min(...responses) * Math.max(1, splitAbove * Math.sqrt(points))),
     dimension: facts.periodic,
   };
 }

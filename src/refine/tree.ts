@@ -1,8 +1,39 @@
 // tree.ts: halves a cell again and again where parent and children disagree; sees a function of t and a norm, nothing of bands.
 
-/** What is known at one sample: filled by the caller's `evaluate`. `t` is the centre of its box in edge coordinates, [-1/2, 1/2]^d. */
+/** What is known of one box: filled by the caller's `evaluate`. Edge coordinates, [-1/2, 1/2]^d for the whole cell. */
 export interface Sample {
+  /** Where the box is sampled. */
   readonly t: Float64Array;
+  /** The middle of the box. */
+  readonly centre: Float64Array;
+}
+
+/** Distance of Gauss's two points from the middle of a unit interval: exact for cubics. */
+const gauss = 1 / (2 * Math.sqrt(3));
+/** Small turns about the axes, radians, that keep samples off every line and plane of symmetry through a box. */
+const turns = [0.11, -0.07, 0.05];
+
+function rotate(point: number[], a: number, b: number, angle: number): void {
+  const [x, y] = [point[a], point[b]];
+  point[a] = Math.cos(angle) * x - Math.sin(angle) * y;
+  point[b] = Math.sin(angle) * x + Math.cos(angle) * y;
+}
+
+/**
+ * Where the 2^d halves of a unit box are sampled, one in each half: the product Gauss points, turned a little. Like them they come in
+ * opposite pairs and have the second moments of the box, so that their mean is the box's mean of any cubic; but none lies on a
+ * line or plane on which a crystal's symmetry makes bands touch, where a single sample would stand for far too much.
+ */
+export function samplePattern(dimension: 2 | 3): number[][] {
+  return Array.from({ length: 1 << dimension }, (_, corner) => {
+    const point = Array.from({ length: dimension }, (_unused, j) => (corner & (1 << j) ? gauss : -gauss));
+    rotate(point, 0, 1, turns[0]);
+    if (dimension === 3) {
+      rotate(point, 1, 2, turns[1]);
+      rotate(point, 2, 0, turns[2]);
+    }
+    return point;
+  });
 }
 
 /** A box and the 2^d boxes it was halved into. Depth 0 is the whole cell; a child has depth + 1 and volume 2^(-d (depth + 1)). */
@@ -11,6 +42,18 @@ export interface Family<S extends Sample> {
   readonly children: readonly S[];
   /** Depth of the parent. */
   readonly depth: number;
+}
+
+/**
+ * Weight of a child in its family's straight-line guess of what was found where the parent was sampled, times the number of children:
+ * parent and children are compared there. The children's places have the second moment 1/12, so that the fitted slope is 12 times
+ * their mean of place times value. `depth` is the parent's.
+ */
+export function guessShare(parent: Sample, child: Sample, depth: number): number {
+  let product = 0;
+  for (let j = 0; j < parent.t.length; j++)
+    product += (parent.t[j] - parent.centre[j]) * (child.t[j] - parent.centre[j]);
+  return 1 + 12 * product * 4 ** depth;
 }
 
 /** What the tree is told by its caller. */
@@ -48,9 +91,13 @@ export function createTree<S extends Sample>(rules: TreeRules<S>) {
     rows[depth] ??= Array.from({ length: childCount }, rules.create);
     return rows[depth];
   };
+  const pattern = samplePattern(dimension);
   const place = (parent: S, child: S, corner: number, depth: number): void => {
-    const quarter = 0.25 / 2 ** depth;
-    for (let j = 0; j < dimension; j++) child.t[j] = parent.t[j] + (corner & (1 << j) ? quarter : -quarter);
+    const size = 2 ** -depth;
+    for (let j = 0; j < dimension; j++) {
+      child.centre[j] = parent.centre[j] + (corner & (1 << j) ? size / 4 : -size / 4);
+      child.t[j] = parent.centre[j] + pattern[corner][j] * size;
+    }
   };
 
   const descend = (parent: S, depth: number, sampleLimit: number, cost: TreeCost): void => {
