@@ -16,7 +16,7 @@ const lowerOrder = 2;
 /** From this many bands below the top on, sums over bands cut from plane waves are not to be trusted. */
 const untrustedBands = 2;
 /** Families let pass disagree alike where the crystal's symmetry makes them alike; calibrated likewise. */
-const likeness = 3;
+const likeness = 2;
 /** Where no sub-mesh shows how the error falls: the part of the neighbour defect that may remain. */
 const remainingDefect = 0.1;
 /** Never claim to know the defect itself better than this. */

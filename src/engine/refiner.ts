@@ -3,7 +3,7 @@ import { boltzmannEvPerK } from "../base/constants.js";
 import type { GridFacts, Triple } from "../grid/grid.js";
 import { type Closeness, mayTouch } from "../refine/gaps.js";
 import { createSpectralNorm, type SpectralNorm } from "../refine/indicator.js";
-import { createTree, type Family, guessShare } from "../refine/tree.js";
+import { createTree, extrapolation, type Family, guessShare } from "../refine/tree.js";
 import { indicatorNodes, type NodeAxis } from "../spectrum/axis.js";
 import type { Sections } from "../spectrum/sections.js";
 import { type BoxSpectrum, createBoxSpectrum } from "./box-spectrum.js";
@@ -53,9 +53,9 @@ export function createRefiner(plan: RefinerPlan): Refiner {
     create: () => newSample(facts, columns),
     evaluate: (sample) => sampler.evaluate(sample, edges),
     disagrees: judge.disagrees,
-    accept: (family) => {
+    accept: (family, resolved) => {
       judge.accept();
-      depositFamily(family, facts.periodic, main);
+      depositFamily(family, resolved, facts.periodic, main);
     },
   });
   const root = newSample(facts, columns);
@@ -99,9 +99,16 @@ function neighbourSteps(dimension: number): Float64Array[] {
   });
 }
 
-function depositFamily({ children, depth }: Family<BandSample>, dimension: number, main: BoxSpectrum): void {
+/** A family that agrees is extrapolated; one that a limit ended counts as it is. */
+function depositFamily(family: Family<BandSample>, resolved: boolean, dimension: number, main: BoxSpectrum): void {
+  const { parent, children, depth } = family;
   const size = 2 ** -depth;
-  for (const child of children) main.add(child, size / 2, size ** dimension / children.length);
+  const volume = size ** dimension;
+  for (const child of children) {
+    const share = resolved ? extrapolation.child(parent, child, depth) : 1;
+    main.add(child, size / 2, (volume / children.length) * share);
+  }
+  if (resolved) main.add(parent, size, volume * extrapolation.parent);
 }
 
 /** Decides on families, and keeps the squares of what was let pass. */
