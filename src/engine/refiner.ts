@@ -3,7 +3,7 @@ import { boltzmannEvPerK } from "../base/constants.js";
 import type { GridFacts, Triple } from "../grid/grid.js";
 import { type Closeness, mayTouch } from "../refine/gaps.js";
 import { createSpectralNorm, type SpectralNorm } from "../refine/indicator.js";
-import { createTree, extrapolation, type Family, guessShare } from "../refine/tree.js";
+import { childWeight, createTree, type Family, guessShare, parentWeight } from "../refine/tree.js";
 import { indicatorNodes, type NodeAxis } from "../spectrum/axis.js";
 import type { Sections } from "../spectrum/sections.js";
 import { type BoxSpectrum, createBoxSpectrum } from "./box-spectrum.js";
@@ -105,10 +105,10 @@ function depositFamily(family: Family<BandSample>, resolved: boolean, dimension:
   const size = 2 ** -depth;
   const volume = size ** dimension;
   for (const child of children) {
-    const share = resolved ? extrapolation.child(parent, child, depth) : 1;
+    const share = resolved ? childWeight(parent, child, depth) : 1;
     main.add(child, size / 2, (volume / children.length) * share);
   }
-  if (resolved) main.add(parent, size, volume * extrapolation.parent);
+  if (resolved) main.add(parent, size, volume * parentWeight(parent, depth));
 }
 
 /** Decides on families, and keeps the squares of what was let pass. */

@@ -9,7 +9,7 @@ export interface Sample {
 }
 
 /** Turns about the axes, radians, that keep samples off every line and plane of symmetry through a box. */
-const turns = [0.25, -0.18, 0.13];
+const turns = [0.16, -0.11, 0.08];
 
 function rotate(point: number[], a: number, b: number, angle: number): void {
   const [x, y] = [point[a], point[b]];
@@ -54,15 +54,24 @@ export function guessShare(parent: Sample, child: Sample, depth: number): number
   return 1 + 16 * product * 4 ** depth;
 }
 
+/** Second moments, per direction: of a box of size 1, and of the places where its halves are sampled. */
+const boxMoment = 1 / 12;
+const familyMoment = 1 / 16;
+
 /**
- * Richardson's extrapolation of a family, as weights: the mean of the children errs by a quarter of what one sample in the middle errs by, so that
- * 4/3 of the mean less 1/3 of the middle is exact for any cubic. The middle is the parent's value less the fitted slope's part.
- * The children's weights are to be divided by their number.
+ * Richardson's extrapolation of a family: the weight of the parent's value, such that with `childWeight` the second moments of the
+ * box come out; -1/3 where the parent was sampled in its middle. Exact for cubics then; off the middle up to the small
+ * part of a quadratic that differs between directions.
  */
-export const extrapolation = {
-  child: (parent: Sample, child: Sample, depth: number): number => 1 + guessShare(parent, child, depth) / 3,
-  parent: -1 / 3,
-} as const;
+export function parentWeight({ t, centre }: Sample, depth: number): number {
+  let offset = 0;
+  for (let j = 0; j < t.length; j++) offset += ((t[j] - centre[j]) ** 2 * 4 ** depth) / t.length;
+  return -(boxMoment - familyMoment) / (familyMoment - offset);
+}
+
+/** Weight of a child in the extrapolation, times the number of children: the middle is the parent's value less the fitted slope's part. */
+export const childWeight = (parent: Sample, child: Sample, depth: number): number =>
+  1 - parentWeight(parent, depth) * guessShare(parent, child, depth);
 
 /** What the tree is told by its caller. */
 export interface TreeRules<S extends Sample> {
