@@ -8,15 +8,15 @@ import { type CurveSampler, occupiedWeight, sampleCurves } from "./occupation.js
 
 /**
  * Once the neighbours have corrected the local models, their error falls like the fourth power of a fine mesh step; on the meshes
- * that people store it falls more slowly. The third power was calibrated on random crystals (tests/studies/calibration).
+ * that people store it falls more slowly. Calibrated on random crystals so that two bars hold about 95 times in 100.
  */
-const modelOrder = 3;
+const modelOrder = 3.4;
 /** Without second derivatives the models are of lower order. */
 const lowerOrder = 2;
 /** From this many bands below the top on, sums over bands cut from plane waves are not to be trusted. */
 const untrustedBands = 2;
 /** Families let pass disagree alike where the crystal's symmetry makes them alike; calibrated likewise. */
-const likeness = 2;
+const likeness = 1.5;
 /** Where no sub-mesh shows how the error falls: the part of the neighbour defect that may remain. */
 const remainingDefect = 0.1;
 /** Never claim to know the defect itself better than this. */
