@@ -29,7 +29,7 @@ async function curves(model, divisions, { periodic, temperatureK }, shift, accur
       directory: join(directory, "grid"),
       divisions: periodic === 3 ? [divisions, divisions, divisions] : [divisions, divisions, 1],
     });
-    const ask = (from, to) =>
+    const ask = (from, to, method) =>
       sweep(
         join(directory, "grid"),
         sweepOptions.parse({
@@ -40,13 +40,14 @@ async function curves(model, divisions, { periodic, temperatureK }, shift, accur
           temperature: [temperatureK],
           accuracy,
           samples,
+          method,
         }),
         { workers: 1 },
       );
-    if (shift === undefined) return await ask(-1.5, 1.5);
+    if (shift === undefined) return await ask(-1.5, 1.5, "refine");
     // The same absolute levels, although the fine mesh finds a reference level of its own.
-    const own = (await ask(-1.5, 1.5)).reference_eV;
-    return await ask(shift - own - 1.5, shift - own + 1.5);
+    const own = (await ask(-1.5, 1.5, "points")).reference_eV;
+    return await ask(shift - own - 1.5, shift - own + 1.5, "refine");
   } finally {
     rmSync(directory, { recursive: true, force: true });
   }
