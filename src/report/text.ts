@@ -38,9 +38,13 @@ function opening(result: CurvesResult): string {
   const [first, last] = [levels[0], levels[levels.length - 1]];
   const kelvin = temperatures.map((temperatureK) => `${plain(temperatureK)} K`).join(", ");
   const title = cleanLine(result.grid.title);
+  const window =
+    levels.length === 1
+      ? `the level ${plain(first)} eV`
+      : `${many(levels.length, "level")} from ${plain(first)} to ${plain(last)} eV`;
   return (
-    `${title === "" ? "" : `${title}: `}${many(responses.length, "response")} at ${kelvin}, ${many(levels.length, "level")} from ` +
-    `${plain(first)} to ${plain(last)} eV about the reference level (${plain(result.reference_eV)} eV in the grid's own scale).`
+    `${title === "" ? "" : `${title}: `}${many(responses.length, "response")} at ${kelvin}, ${window} ` +
+    `about the reference level (${plain(result.reference_eV)} eV in the grid's own scale).`
   );
 }
 
@@ -58,7 +62,9 @@ function headline(result: CurvesResult): string {
     ? `, which takes ${plain(Math.abs(added), 3)} electrons per cell ${added < 0 ? "fewer" : "more"}`
     : "";
   const kelvin = `At ${plain(result.temperature_K[0])} K ${name}`;
-  if (here !== undefined && Math.abs(most.levelEv) < 1e-9 && levels.length > 1)
+  if (levels.length === 1)
+    return `${kelvin} is ${withError(most.value, most.error)} ${unit} at ${plain(most.levelEv, 4)} eV from the reference level.`;
+  if (here !== undefined && Math.abs(most.levelEv) < 1e-9)
     return `${kelvin} is ${withError(here.value, here.error)} ${unit} at the reference level, its largest magnitude in the window.`;
   const start = here === undefined ? "" : `is ${withError(here.value, here.error)} ${unit} at the reference level and `;
   return (
@@ -161,7 +167,7 @@ export function curvesText(result: CurvesResult, options: TextOptions = {}): str
   const rows = result.responses.flatMap((response) => rowsOf(result, response));
   const warned = cautions(result).map((caution) => wrapped(`Caution: ${caution}`, width));
   const notes = result.notes.map((note) => wrapped(`Note: ${cleanLine(note)}`, width));
-  const drawn = options.charts === false ? [] : [charts(result, width)];
+  const drawn = options.charts === false || result.level_eV.length === 1 ? [] : [charts(result, width)];
   return `${[
     wrapped(opening(result), width),
     wrapped(headline(result), width),
