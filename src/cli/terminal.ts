@@ -30,7 +30,7 @@ export function sanitise(text: string): string {
   return text.replace(/(?![\n\t])[\p{Cc}\p{Cs}\u2028\u2029\u202a-\u202e\u2066-\u2069]/gu, "\ufffd");
 }
 
-/** JSON text in which those characters stand as \uXXXX, so that it is safe on a terminal and still the same document. */
+/** JSON text in which those characters stand as escapes of four hexadecimal digits, so that it is safe on a terminal and still the same document. */
 function escaped(json: string): string {
   const inHex = (character: string): string => `\\u${character.charCodeAt(0).toString(16).padStart(4, "0")}`;
   return json.replace(/[\u007f-\u009f\u2028\u2029\u202a-\u202e\u2066-\u2069]/g, inHex);

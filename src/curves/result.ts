@@ -9,7 +9,7 @@ export interface ResponseCurve {
   /** e.g. "(hbar/e) S/cm" */
   unit: string;
   value: Table;
-  /** One standard bar: the true value is expected within 2 bars about 95 times in 100. NaN (null in JSON) where it could not be estimated. */
+  /** One standard bar: for `refine` the true value is expected within 2 bars about 95 times in 100; other methods' bars are not calibrated. NaN (null in JSON) where it could not be estimated. */
   error: Table;
   error_sampling: Table;
   /** Zero for methods that use no local model. */
