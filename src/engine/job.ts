@@ -1,5 +1,6 @@
 // job.ts: everything a worker needs to know to do its share of a sweep: plain data, no functions.
 import type { ResponsePlan } from "../bands/responses.js";
+import type { View } from "../grid/view.js";
 import type { Denominator } from "../kernel/kernel.js";
 import type { LevelAxis } from "../spectrum/axis.js";
 
@@ -7,6 +8,8 @@ export type Method = "points" | "cells" | "refine";
 
 export interface SweepJob {
   readonly directory: string;
+  /** Only this contained sub-mesh of the grid is meant. */
+  readonly view?: View;
   readonly method: Method;
   readonly plan: ResponsePlan;
   readonly denominator: Denominator;

@@ -52,7 +52,7 @@ function setWidths(point: PointRef, first: number, end: number, edges: readonly 
 /** Opens the reader a job needs; second derivatives only where a local model is made. */
 export function readerFor(job: SweepJob, hessian = false): BlockReader {
   const directions = job.method === "points" ? usedDirections(job) : [0, 1, 2];
-  return openReader(openGrid(job.directory), { velocity: directions, moments: job.plan.moments, hessian });
+  return openReader(openGrid(job.directory, job.view), { velocity: directions, moments: job.plan.moments, hessian });
 }
 
 const usedDirections = (job: SweepJob): number[] =>

@@ -1,4 +1,5 @@
 // grid.ts: what the rest of the program knows of a band grid on disk: facts, what to read, and a block of k points.
+import type { View } from "./view.js";
 
 export type Triple = readonly [number, number, number];
 
@@ -37,6 +38,8 @@ export interface GridFacts {
   readonly sha256: string;
   /** Total bytes of all array files. */
   readonly bytes: number;
+  /** Set where these are the facts of a contained sub-mesh; divisions, offset and points are then the sub-mesh's. */
+  readonly view?: View;
 }
 
 /** Which matrices a pass needs. Energies always come. */

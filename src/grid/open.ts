@@ -11,6 +11,7 @@ import { parseJson, quoted, readManifestBytes, reasonOf } from "./jsontext.js";
 import { type Manifest, manifestName, manifestSchema } from "./manifest.js";
 import { planArray } from "./plan.js";
 import { energyUnits, hessianUnits, momentUnits, velocityUnits } from "./units.js";
+import { type View, viewFacts } from "./view.js";
 
 /** An open band grid: facts and where its numbers lie. Plain data, safe to send to a worker; holds no file open. */
 export interface Grid {
@@ -24,18 +25,20 @@ export interface Grid {
 }
 
 /**
- * Opens the band grid in `directory`: manifest, files, byte lengths and headers are checked, the numbers are not.
+ * Opens the band grid in `directory`: manifest, files, byte lengths and headers are checked, the numbers are not. With a view the
+ * facts are those of a contained sub-mesh, and readers give its points alone.
  * Throws a data Fault that says field or file, what was found, and what was expected.
  */
-export function openGrid(directory: string): Grid {
+export function openGrid(directory: string, view?: View): Grid {
   checkDirectory(directory);
   const bytes = readManifestBytes(join(directory, manifestName));
   const manifest = parseManifest(bytes);
   const facts = factsOf(manifest, manifestName);
   const arrays = planArrays(directory, manifest, facts);
   const size = arrays.flatMap((array) => array.files).reduce((sum, file) => sum + file.bytes, 0);
+  const stored = { directory: resolve(directory), ...facts, sha256: fingerprint(bytes, arrays), bytes: size };
   return {
-    facts: { directory: resolve(directory), ...facts, sha256: fingerprint(bytes, arrays), bytes: size },
+    facts: view === undefined ? stored : viewFacts(stored, view),
     arrays,
     slowArrays: arrays.filter((array) => array.axes[0] !== "k" && array.points > 1).map((array) => array.name),
     provenance: manifest.provenance,

@@ -8,6 +8,7 @@ import { createHandles, type Handles } from "./handles.js";
 import type { Grid } from "./open.js";
 import { forEachPiece, type Stage, stageOf } from "./pieces.js";
 import { type Finding, verifyEnergies, verifyMatrices } from "./verify.js";
+import { storedFacts, viewReader } from "./view.js";
 
 export { type Grid, openGrid } from "./open.js";
 
@@ -35,6 +36,7 @@ export function wantAll(grid: Grid): Want {
  * `read` throws a data Fault that names array, k point and bands. Throws a usage Fault for a want that the grid cannot give.
  */
 export function openReader(grid: Grid, want: Want): BlockReader {
+  if (grid.facts.view !== undefined) return viewReader(openReader(storedGrid(grid), want), grid.facts);
   const reader = openUncheckedReader(grid, want);
   const report = ({ message, cure }: Finding): never => {
     throw dataFault(message, cure);
@@ -51,6 +53,9 @@ export function openReader(grid: Grid, want: Want): BlockReader {
     },
   };
 }
+
+/** The whole grid of which `grid` shows a sub-mesh. */
+const storedGrid = (grid: Grid): Grid => ({ ...grid, facts: storedFacts(grid.facts) });
 
 /** Calls `visit` for every matrix component that a block holds, in the order of the grid's arrays. */
 export function forEachMatrix(
@@ -77,6 +82,7 @@ function momentName(plan: ArrayPlan): string {
 
 /** As openReader, without looking at the numbers. */
 export function openUncheckedReader(grid: Grid, want: Want): BlockReader {
+  if (grid.facts.view !== undefined) return viewReader(openUncheckedReader(storedGrid(grid), want), grid.facts);
   const sources = sourcesOf(grid, want);
   const handles = createHandles();
   const { facts } = grid;

@@ -33,7 +33,7 @@ function bandRanges(facts: GridFacts): Float64Array {
 }
 
 function visitEnergies(facts: GridFacts, visit: (energies: Float64Array, offset: number) => void): void {
-  const reader = openReader(openGrid(facts.directory), { velocity: [], moments: [], hessian: false });
+  const reader = openReader(openGrid(facts.directory, facts.view), { velocity: [], moments: [], hessian: false });
   walkPoints(reader, { first: 0, count: facts.points }, [], (_flat, point) =>
     visit(point.energyEv, point.energyOffset),
   );

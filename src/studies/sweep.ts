@@ -21,6 +21,7 @@ import { counters } from "../engine/refiner.js";
 import { type RunOptions, runTasks } from "../engine/run.js";
 import type { GridFacts } from "../grid/grid.js";
 import { openGrid } from "../grid/open.js";
+import { storedFacts, type View } from "../grid/view.js";
 import { planAxis } from "../spectrum/axis.js";
 import type { Sections } from "../spectrum/sections.js";
 import { cellArea, cellVolume } from "../zone/lattice.js";
@@ -56,16 +57,25 @@ interface SweepPlan {
   readonly options: SweepOptions;
 }
 
+/** A part of a grid to sweep over, by a level found elsewhere. */
+export interface SweptPart {
+  /** Only this contained sub-mesh. */
+  readonly view?: View;
+  /** Reference level; otherwise that of the whole grid. */
+  readonly reference?: ReferenceLevel;
+}
+
 /** Checks the options against the grid and plans the job. Throws usage and data Faults. */
-export function planSweep(directory: string, options: SweepOptions): SweepPlan {
+export function planSweep(directory: string, options: SweepOptions, part: SweptPart = {}): SweepPlan {
   if (options.points === 1 ? options.from !== options.to : !(options.from < options.to))
     throw usageFault(
       `--from ${options.from} --to ${options.to} --points ${options.points} is no window`,
       "Let --from lie below --to, or give --points 1 with both equal.",
     );
-  const { facts } = openGrid(directory);
+  const { view } = part;
+  const { facts } = openGrid(directory, view);
   const plan = planResponses(options.response ?? defaultResponses(facts), facts);
-  const reference = referenceLevel(facts);
+  const reference = part.reference ?? referenceLevel(storedFacts(facts));
   const temperatures = [...new Set(options.temperature)].sort((a, b) => a - b);
   const window = {
     fromEv: reference.levelEv + options.from,
@@ -75,6 +85,7 @@ export function planSweep(directory: string, options: SweepOptions): SweepPlan {
   const regularEv = options.method === "refine" ? resolvedEnergy(facts, window.fromEv, window.toEv) : 0;
   const job: SweepJob = {
     directory,
+    view,
     method: options.method,
     plan,
     denominator: { degenerateEv: options.degenerate, broadenEv: options.broaden },
@@ -111,8 +122,13 @@ async function compute({ job, facts, options, regularEv }: SweepPlan, run: RunOp
 }
 
 /** Computes a sweep. The result does not depend on the number of workers. */
-export async function sweep(directory: string, options: SweepOptions, run: RunOptions): Promise<CurvesResult> {
-  const planned = planSweep(directory, options);
+export async function sweep(
+  directory: string,
+  options: SweepOptions,
+  run: RunOptions,
+  part: SweptPart = {},
+): Promise<CurvesResult> {
+  const planned = planSweep(directory, options, part);
   return assembleResult(planned, await compute(planned, run));
 }
 
