@@ -3,8 +3,9 @@ import { boltzmannEvPerK } from "../base/constants.js";
 import type { HessianKind } from "../grid/grid.js";
 import { coarseNodes, indicatorNodes, type LevelAxis, type NodeAxis } from "../spectrum/axis.js";
 import type { Sections } from "../spectrum/sections.js";
-import type { ColumnCurves, SpectraFacts } from "./assemble.js";
+import { type ColumnCurves, densityOfStates, type SpectraFacts } from "./assemble.js";
 import { type CurveSampler, occupiedWeight, sampleCurves } from "./occupation.js";
+import type { Table } from "./result.js";
 
 /**
  * Once the neighbours have corrected the local models, their error falls like the fourth power of a fine mesh step; on the meshes
@@ -74,6 +75,18 @@ export function refinedCurves(sections: Sections, facts: RefinedFacts): ColumnCu
     axis,
     columns,
   );
+}
+
+/**
+ * States per eV and cell, [temperature][level]: the slope of the electrons of `refinedCurves` at the resolution of the levels, the
+ * neighbour defect included and blurred alike.
+ */
+export function refinedStates(sections: Sections, facts: RefinedFacts): Table {
+  const coldestK = (facts.regularEv * defectDetail) / boltzmannEvPerK;
+  const temperaturesK = facts.axis.temperaturesK.map((temperatureK) => Math.max(temperatureK, coldestK));
+  const trees = densityOfStates(sections, "refine", facts);
+  const defect = densityOfStates(sections, "refine.defect", { ...facts, axis: { ...facts.axis, temperaturesK } });
+  return trees.map((row, t) => row.map((perEv, level) => perEv + defect[t][level]));
 }
 
 type Squares = (levelEv: number, temperatureK: number, out: Float64Array) => void;

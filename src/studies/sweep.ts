@@ -12,8 +12,15 @@ import {
   type SpectraFacts,
   spreadCurves,
 } from "../curves/assemble.js";
-import { type RefinedErrors, type RefinedFacts, refinedCurves, refinedErrors } from "../curves/refined.js";
+import {
+  type RefinedErrors,
+  type RefinedFacts,
+  refinedCurves,
+  refinedErrors,
+  refinedStates,
+} from "../curves/refined.js";
 import type { CurvesResult, ResponseCurve, Table } from "../curves/result.js";
+import { columnCount } from "../engine/columns.js";
 import { cutTasks, type RefineJob, type SweepJob } from "../engine/job.js";
 import { resolvedEnergy } from "../engine/mesh-step.js";
 import { planRefinement } from "../engine/refine-plan.js";
@@ -135,7 +142,7 @@ export async function sweep(
 function spectraFacts({ job, facts }: SweepPlan): SpectraFacts {
   return {
     axis: job.axis,
-    columns: job.plan.columns.length + 1,
+    columns: columnCount(job.plan),
     points: facts.points,
     electronsPerBand: facts.electronsPerBand,
     dimension: facts.periodic,
@@ -274,7 +281,9 @@ function assembleResult(planned: SweepPlan, computed: Computed): CurvesResult {
     doping_per_cell: doping,
     doping_density: doping.map((row) => row.map((value) => value * density)),
     doping_density_unit: periodic === 3 ? "per_cm3" : "per_cm2",
-    states_per_eV: densityOfStates(sections, job.method, known),
+    states_per_eV: computed.refined
+      ? refinedStates(sections, refinedFacts(planned))
+      : densityOfStates(sections, job.method, known),
     responses: responseCurves(planned, computed, curves),
     sampling: samplingOf(planned, computed),
     notes: notesOf(planned),
