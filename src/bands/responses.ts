@@ -21,6 +21,8 @@ export interface ResponsePlan {
   readonly moments: readonly { readonly name: string; readonly direction: number }[];
   readonly products: readonly ResponseProduct[];
   readonly columns: readonly ResponseColumn[];
+  /** Directions of the Drude weight, which every sweep keeps beside the responses: those of the plane or of space. */
+  readonly drude: readonly (0 | 1 | 2)[];
 }
 
 const axes = ["x", "y", "z"];
@@ -146,7 +148,7 @@ export function planResponses(names: readonly string[], facts: Facts): ResponseP
     });
     return { name, carrier, terms: weighted };
   });
-  return { moments, products, columns };
+  return { moments, products, columns, drude: facts.periodic === 3 ? [0, 1, 2] : [0, 1] };
 }
 
 /** What a sweep computes when no response is named: charge xy and the rotational means of the axial moments. */

@@ -2,31 +2,42 @@
 import type { ResponseColumn, ResponsePlan } from "../bands/responses.js";
 import type { MixedProduct } from "../kernel/kernel.js";
 
-/** Number of columns of a job: one per response, and one that counts states. */
-export const columnCount = (plan: ResponsePlan): number => plan.columns.length + 1;
+/** Number of columns of a job: one per response, one per direction of the Drude weight, and one that counts states. */
+export const columnCount = (plan: ResponsePlan): number => plan.columns.length + plan.drude.length + 1;
 
-/** Writes the columns of one band: `products` is [product][band]; the last column is 1. */
+/** What is known of the bands of one k point. */
+export interface BandQuantities {
+  readonly bands: number;
+  /** [product * bands + band] */
+  readonly products: Float64Array;
+  /** v_a v_a, [band * 3 + direction]. */
+  readonly squares: Float64Array;
+}
+
+/** Writes the columns of one band: responses, v_a v_a of the plan's directions, and last 1. */
 export function fillColumns(
-  plan: Pick<ResponsePlan, "columns">,
-  products: Float64Array,
-  bands: number,
+  plan: Pick<ResponsePlan, "columns" | "drude">,
+  { products, squares, bands }: BandQuantities,
   band: number,
   out: Float64Array,
 ): void {
-  const { columns } = plan;
+  const { columns, drude } = plan;
   for (let c = 0; c < columns.length; c++) {
     let sum = 0;
     for (const { product, weight } of columns[c].terms) sum += weight * products[product * bands + band];
     out[c] = sum;
   }
-  out[columns.length] = 1;
+  for (let i = 0; i < drude.length; i++) out[columns.length + i] = squares[3 * band + drude[i]];
+  out[columns.length + drude.length] = 1;
 }
 
 /**
  * The same columns from fewer products, for kernels that take sums of currents: the products of a column that share their field
  * become one.
  */
-export function mixColumns(plan: ResponsePlan): { products: MixedProduct[]; columns: ResponseColumn[] } {
+export function mixColumns(
+  plan: ResponsePlan,
+): Pick<ResponsePlan, "columns" | "drude"> & { readonly products: MixedProduct[] } {
   const products: MixedProduct[] = [];
   const columns = plan.columns.map((column): ResponseColumn => {
     const fields = [...new Set(column.terms.map(({ product }) => plan.products[product].field))];
@@ -40,5 +51,5 @@ export function mixColumns(plan: ResponsePlan): { products: MixedProduct[]; colu
     });
     return { ...column, terms };
   });
-  return { products, columns };
+  return { products, columns, drude: plan.drude };
 }

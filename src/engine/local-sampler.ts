@@ -2,6 +2,7 @@
 import type { GridFacts, Triple } from "../grid/grid.js";
 import type { PointRef } from "../kernel/kernel.js";
 import { createLocalModel } from "../kernel/local.js";
+import { averageOverSets } from "../kernel/sets.js";
 import type { Sample } from "../refine/tree.js";
 import { columnCount, fillColumns, mixColumns } from "./columns.js";
 import type { RefineJob } from "./job.js";
@@ -24,19 +25,6 @@ export const newSample = (facts: GridFacts, columns: number): BandSample => ({
   values: new Float64Array(facts.bands * columns),
 });
 
-/** Gives the bands of a degenerate set their mean slope, which unlike their own does not depend on the set's arbitrary basis. */
-export function averageSlopes(energyEv: Float64Array, slopes: Float64Array, degenerateEv: number): void {
-  for (let first = 0, end = 1; first < energyEv.length; first = end++) {
-    while (end < energyEv.length && energyEv[end] - energyEv[end - 1] < degenerateEv) end++;
-    if (end - first === 1) continue;
-    for (let a = 0; a < 3; a++) {
-      let sum = 0;
-      for (let n = first; n < end; n++) sum += slopes[3 * n + a];
-      for (let n = first; n < end; n++) slopes[3 * n + a] = sum / (end - first);
-    }
-  }
-}
-
 export interface LocalSampler {
   load(point: PointRef): void;
   /** Fills the sample at its t (in the given edges), with the denominators of the job. */
@@ -58,6 +46,7 @@ export function createLocalSampler(job: RefineJob, facts: GridFacts): LocalSampl
     directions: facts.periodic === 3 ? [0, 1, 2] : [0, 1],
     products,
     denominators: [job.denominator, regular],
+    togetherEv: job.denominator.degenerateEv,
   });
   const curvature = new Float64Array(2 * products.length * bands);
   const regularised = curvature.subarray(products.length * bands);
@@ -69,9 +58,9 @@ export function createLocalSampler(job: RefineJob, facts: GridFacts): LocalSampl
     model.evaluate(q[0], q[1], q[2], curvature);
     sample.energyEv.set(model.energyEv);
     sample.slopes.set(model.slopes);
-    averageSlopes(sample.energyEv, sample.slopes, job.denominator.degenerateEv);
+    averageOverSets(sample.energyEv, sample.slopes, job.denominator.degenerateEv);
     for (let band = 0; band < bands; band++) {
-      fillColumns(mixed, source, bands, band, row);
+      fillColumns(mixed, { products: source, squares: model.squares, bands }, band, row);
       sample.values.set(row, band * columns);
     }
   };

@@ -3,9 +3,9 @@ import type { GridFacts } from "../grid/grid.js";
 import { openGrid } from "../grid/open.js";
 import { openReader } from "../grid/reader.js";
 import { createPairPass } from "../kernel/pair.js";
+import { averageOverSets } from "../kernel/sets.js";
 import { cellEdges } from "../zone/mesh.js";
 import { walkPoints } from "./blocks.js";
-import { averageSlopes } from "./local-sampler.js";
 import { spanWidths } from "./pass.js";
 
 const mostPoints = 256;
@@ -34,7 +34,7 @@ export function resolvedEnergy(facts: GridFacts, fromEv: number, toEv: number): 
   for (let first = 0; first < facts.points; first += stride)
     walkPoints(reader, { first, count: 1 }, [], (_flat, point) => {
       pass.slopes(point, slope);
-      averageSlopes(point.energyEv.subarray(point.energyOffset, point.energyOffset + facts.bands), slope, togetherEv);
+      averageOverSets(point.energyEv.subarray(point.energyOffset, point.energyOffset + facts.bands), slope, togetherEv);
       for (let band = 0; band < facts.bands; band++) {
         const energy = point.energyEv[point.energyOffset + band];
         if (energy < fromEv - marginEv || energy > toEv + marginEv) continue;

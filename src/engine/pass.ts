@@ -4,6 +4,7 @@ import { openGrid } from "../grid/open.js";
 import { openReader } from "../grid/reader.js";
 import type { MatrixRef, PointRef } from "../kernel/kernel.js";
 import { createPairPass } from "../kernel/pair.js";
+import { setEnd, storedSquares } from "../kernel/sets.js";
 import type { Sections } from "../spectrum/sections.js";
 import { cellEdges, spreadSubMeshes, subMeshOf } from "../zone/mesh.js";
 import { walkPoints } from "./blocks.js";
@@ -18,14 +19,6 @@ export function spanWidths(slope: Float64Array, band: number, edges: readonly Tr
     const [x, y, z] = edges[j];
     out[j] = Math.abs(slope[at] * x + slope[at + 1] * y + slope[at + 2] * z);
   }
-}
-
-/** Bands first .. end - 1 that count as one set: each closer to the one before it than the degeneracy tolerance. */
-function setEnd(point: PointRef, first: number, degenerateEv: number): number {
-  const { energyEv, energyOffset, bands } = point;
-  let end = first + 1;
-  while (end < bands && energyEv[energyOffset + end] - energyEv[energyOffset + end - 1] < degenerateEv) end++;
-  return end;
 }
 
 /**
@@ -55,8 +48,8 @@ export function readerFor(job: SweepJob, hessian = false): BlockReader {
   return openReader(openGrid(job.directory, job.view), { velocity: directions, moments: job.plan.moments, hessian });
 }
 
-const usedDirections = (job: SweepJob): number[] =>
-  [...new Set(job.plan.products.flatMap((p) => [p.flow, p.field]))].sort();
+const usedDirections = ({ plan }: SweepJob): number[] =>
+  [...new Set([...plan.drude, ...plan.products.flatMap((p) => [p.flow, p.field])])].sort();
 
 function tallies(job: SweepJob, facts: GridFacts): [string, Tally][] {
   const columns = columnCount(job.plan);
@@ -75,18 +68,20 @@ export function meshPass(job: SweepJob, task: Task): Sections {
   const sub = spreadSubMeshes(facts);
   const edges = cellEdges(facts);
   const curvature = new Float64Array(job.plan.products.length * bands);
+  const squares = new Float64Array(3 * bands);
   const widths = new Float64Array(edges.length);
   const values = new Float64Array(columnCount(job.plan));
   walkPoints(reader, task, job.plan.moments, (flat, point) => {
     pass.run(point, curvature);
+    storedSquares(point, job.denominator.degenerateEv, squares);
     const coset = sub === undefined ? 0 : subMeshOf(flat, facts, sub);
     let end = 0;
     for (let band = 0; band < bands; band++) {
       if (band === end) {
-        end = setEnd(point, band, job.denominator.degenerateEv);
+        end = setEnd(point.energyEv, point.energyOffset, bands, band, job.denominator.degenerateEv);
         if (job.method !== "points") setWidths(point, band, end, edges, widths);
       }
-      fillColumns(job.plan, curvature, bands, band, values);
+      fillColumns(job.plan, { products: curvature, squares, bands }, band, values);
       for (const [, tally] of kept) tally.add(point.energyEv[point.energyOffset + band], widths, values, coset);
     }
   });

@@ -51,6 +51,8 @@ function tolerances(job: SweepJob, facts: GridFacts, survey: Sections, accuracy:
     if (c < columns - 1) largest[c] = Math.max(largest[c], symmetryFloor * size, absoluteFloor * facts.points);
   }
   largest[columns - 1] = Math.max(facts.points, Math.max(...counts) - Math.min(...counts));
+  // The Drude weight comes along, and steers nothing.
+  largest.fill(Number.POSITIVE_INFINITY, job.plan.columns.length, columns - 1);
   return Array.from(largest, (value) => (accuracy * value) / facts.points);
 }
 

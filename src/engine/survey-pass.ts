@@ -1,5 +1,6 @@
 // survey-pass.ts: the first of the two passes of a refined sweep: the plain mesh sum, and how large each response is at all.
 import { createPairPass } from "../kernel/pair.js";
+import { averageOverSets, storedSquares } from "../kernel/sets.js";
 import { coarseNodes, type LevelAxis } from "../spectrum/axis.js";
 import type { Sections } from "../spectrum/sections.js";
 import { cellEdges } from "../zone/mesh.js";
@@ -7,7 +8,7 @@ import { walkPoints } from "./blocks.js";
 import { createBoxSpectrum } from "./box-spectrum.js";
 import { columnCount, fillColumns } from "./columns.js";
 import type { SweepJob, Task } from "./job.js";
-import { averageSlopes, newSample } from "./local-sampler.js";
+import { newSample } from "./local-sampler.js";
 import { readerFor } from "./pass.js";
 import { createPointTally } from "./tally.js";
 
@@ -40,23 +41,26 @@ export function surveyPass(job: SweepJob, regularEv: number, task: Task): Sectio
   const regular = createBoxSpectrum(coarseNodes(job.axis), columns, edges);
   const sample = newSample(facts, columns);
   const curvature = new Float64Array(job.plan.products.length * bands);
+  const squares = new Float64Array(3 * bands);
+  const quantities = { products: curvature, squares, bands };
   const row = new Float64Array(columns);
   const none = new Float64Array(0);
   const levels = levelsForSize(job.axis);
   const size = new Float64Array(levels.length * columns);
   walkPoints(reader, task, job.plan.moments, (_flat, point) => {
     const energies = point.energyEv.subarray(point.energyOffset, point.energyOffset + bands);
+    storedSquares(point, job.denominator.degenerateEv, squares);
     plain.run(point, curvature);
     for (let band = 0; band < bands; band++) {
-      fillColumns(job.plan, curvature, bands, band, row);
+      fillColumns(job.plan, quantities, band, row);
       points.add(energies[band], none, row, 0);
     }
     smooth.run(point, curvature);
     smooth.slopes(point, sample.slopes);
     sample.energyEv.set(energies);
-    averageSlopes(sample.energyEv, sample.slopes, job.denominator.degenerateEv);
+    averageOverSets(sample.energyEv, sample.slopes, job.denominator.degenerateEv);
     for (let band = 0; band < bands; band++) {
-      fillColumns(job.plan, curvature, bands, band, row);
+      fillColumns(job.plan, quantities, band, row);
       sample.values.set(row, band * columns);
     }
     regular.add(sample, 1, 1);

@@ -22,11 +22,14 @@ import {
 } from "./operators.js";
 import { addPairs, fillInverse, packAntiHermitian, packHermitian, pairCount, weighPairs } from "./pairs.js";
 import { multiplyInto } from "./product.js";
+import { averageOverSets, fillEnds, lowerSquares, rotatedSquares } from "./sets.js";
 
 /** What a local model is asked for. */
 export interface LocalSpec extends OperatorSpec {
   /** Every evaluation gives the curvatures with each of these denominators. */
   readonly denominators: readonly Denominator[];
+  /** Bands closer than this count as one set in `squares`; default 0. */
+  readonly togetherEv?: number;
 }
 
 /** The local model of the point loaded last; its arrays are overwritten by each evaluation. One per thread. */
@@ -46,16 +49,25 @@ export interface LocalModel {
   readonly energyEv: Float64Array;
   /** Slopes dE/dk of the model at q, eV angstrom, [band * 3 + direction]; zero for directions not asked for. */
   readonly slopes: Float64Array;
+  /** v_a v_a of every band, (eV angstrom)^2, [band * 3 + direction]; each band of a set has its part of the set's trace. */
+  readonly squares: Float64Array;
   /** Row i: the state of energyEv[i] in the stored bands, component j at [2 (i bands + j)]. */
   readonly vectors: Float64Array;
 }
 
+/** What a rotation writes; see LocalModel. */
+interface Rotated {
+  readonly slopes: Float64Array;
+  readonly squares: Float64Array;
+  readonly pairs: Float64Array;
+}
+
 /** Brings the operators of a store into the eigenbasis. */
 interface Rotation {
-  /** Sets the basis: row i of `vectors` is state i. */
-  setBasis(vectors: Float64Array): void;
-  /** Rotates one pack at q; writes the slopes of the velocities in it, and the pairs of all its operators. */
-  rotate(pack: Pack, q: Float64Array, slopes: Float64Array, pairs: Float64Array): void;
+  /** Sets the basis: row i of `vectors` is state i; bands closer than `togetherEv` are one set. */
+  setBasis(vectors: Float64Array, energyEv: Float64Array, togetherEv: number): void;
+  /** Rotates one pack at q; writes slopes and squares of the velocities in it, and the pairs of all its operators. */
+  rotate(pack: Pack, q: Float64Array, into: Rotated): void;
 }
 
 function createRotation(bands: number, store: OperatorStore): Rotation {
@@ -64,7 +76,10 @@ function createRotation(bands: number, store: OperatorStore): Rotation {
   // States as columns, their conjugates as rows, a pack at q, the same times the states, and that in the eigenbasis.
   const [columns, conjugate, packed, moved, rotated] = [0, 0, 0, 0, 0].map(() => new Float64Array(length));
 
-  const setBasis = (vectors: Float64Array) => {
+  const ends = new Int32Array(bands);
+
+  const setBasis = (vectors: Float64Array, energyEv: Float64Array, togetherEv: number) => {
+    fillEnds(energyEv, togetherEv, ends);
     for (let i = 0; i < bands; i++) {
       for (let j = 0; j < bands; j++) {
         const re = vectors[2 * (i * bands + j)];
@@ -77,7 +92,7 @@ function createRotation(bands: number, store: OperatorStore): Rotation {
     }
   };
 
-  const rotate = (pack: Pack, q: Float64Array, slopes: Float64Array, pairs: Float64Array) => {
+  const rotate = (pack: Pack, q: Float64Array, { slopes, squares, pairs }: Rotated) => {
     const { operators, shape, offset, terms } = pack;
     const moves = terms.length > 0;
     if (moves) {
@@ -86,7 +101,9 @@ function createRotation(bands: number, store: OperatorStore): Rotation {
     }
     multiplyInto(size, shape, moves ? packed : data, moves ? 0 : offset, columns, 0, moved, 0);
     if (shape === "lower") {
-      addLowerSlopes(bands, size, columns, moved, operators[0][0].direction, slopes);
+      const { direction } = operators[0][0];
+      addLowerSlopes(bands, size, columns, moved, direction, slopes);
+      lowerSquares(size, columns, moved, ends, direction, squares);
       return;
     }
     multiplyInto(size, "full", conjugate, 0, moved, 0, rotated, 0);
@@ -97,6 +114,7 @@ function createRotation(bands: number, store: OperatorStore): Rotation {
       else packAntiHermitian(bands, size, rotated, 0, pairs, at);
       if (direction === undefined) continue;
       for (let n = 0; n < bands; n++) slopes[3 * n + direction] = rotated[2 * (n * size + n) + i];
+      rotatedSquares(size, rotated, i === 1, ends, direction, squares);
     }
   };
   return { setBasis, rotate };
@@ -119,12 +137,24 @@ function addLowerSlopes(
   }
 }
 
-/** Free-electron second derivative: every level moves by hbar^2 q^2 / 2m, every slope by hbar^2 q_a / m. */
-function addFreeElectron(bands: number, q: Float64Array, energyEv: Float64Array, slopes: Float64Array): void {
+/**
+ * Free-electron second derivative: every level moves by hbar^2 q^2 / 2m, every slope by hbar^2 q_a / m; `mean` are the slopes averaged
+ * over sets, before.
+ */
+function addFreeElectron(
+  q: Float64Array,
+  mean: Float64Array,
+  energyEv: Float64Array,
+  { slopes, squares }: Rotated,
+): void {
   const shift = 0.5 * hbar2OverMeEvA2 * (q[0] * q[0] + q[1] * q[1] + q[2] * q[2]);
-  for (let n = 0; n < bands; n++) {
+  for (let n = 0; n < energyEv.length; n++) {
     energyEv[n] += shift;
-    for (let a = 0; a < 3; a++) slopes[3 * n + a] += hbar2OverMeEvA2 * q[a];
+    for (let a = 0; a < 3; a++) {
+      const more = hbar2OverMeEvA2 * q[a];
+      slopes[3 * n + a] += more;
+      squares[3 * n + a] += 2 * more * mean[3 * n + a] + more * more;
+    }
   }
 }
 
@@ -163,7 +193,7 @@ function createCurvatures({ bands, products, denominators }: LocalSpec, packs: r
 
 /** A local model for points of spec.bands bands. Nothing is allocated per step. */
 export function createLocalModel(spec: LocalSpec): LocalModel {
-  const { bands, hessian, directions } = spec;
+  const { bands, hessian, directions, togetherEv = 0 } = spec;
   const store = createOperatorStore(spec);
   const rotation = createRotation(bands, store);
   const hamiltonian = createHamiltonian(bands, hessian, directions);
@@ -171,9 +201,12 @@ export function createLocalModel(spec: LocalSpec): LocalModel {
   const addCurvatures = createCurvatures(spec, store.packs);
   const energyEv = new Float64Array(bands);
   const slopes = new Float64Array(3 * bands);
+  const squares = new Float64Array(3 * bands);
+  const mean = new Float64Array(3 * bands);
   const vectors = new Float64Array(2 * bands * bands);
   const pairs = new Float64Array(store.packs.length * 4 * pairCount(bands));
   const step = new Float64Array(3);
+  const into: Rotated = { slopes, squares, pairs };
 
   const evaluate = (qx: number, qy: number, qz: number, curvature: Float64Array) => {
     step.fill(0);
@@ -182,15 +215,20 @@ export function createLocalModel(spec: LocalSpec): LocalModel {
       step[direction] = direction === 0 ? qx : direction === 1 ? qy : qz;
     }
     solve(hamiltonian.at(step), energyEv, vectors);
-    rotation.setBasis(vectors);
+    rotation.setBasis(vectors, energyEv, togetherEv);
     slopes.fill(0);
-    for (let i = 0; i < store.packs.length; i++) rotation.rotate(store.packs[i], step, slopes, pairs);
-    if (hessian === "free-electron") addFreeElectron(bands, step, energyEv, slopes);
+    squares.fill(0);
+    for (let i = 0; i < store.packs.length; i++) rotation.rotate(store.packs[i], step, into);
+    if (hessian === "free-electron") {
+      mean.set(slopes);
+      averageOverSets(energyEv, mean, togetherEv);
+      addFreeElectron(step, mean, energyEv, into);
+    }
     addCurvatures(energyEv, pairs, curvature);
   };
   const load = (point: PointRef) => {
     store.load(point);
     hamiltonian.load(point);
   };
-  return { load, evaluate, energyEv, slopes, vectors };
+  return { load, evaluate, energyEv, slopes, squares, vectors };
 }

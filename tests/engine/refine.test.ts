@@ -52,10 +52,11 @@ describe("columns", () => {
         expect(p).toBeGreaterThanOrEqual(0);
         for (let band = 0; band < bands; band++) sums[m * bands + band] += weight * separate[p * bands + band];
       }
+    const squares = Float64Array.from({ length: 3 * bands }, random);
     const [expected, found] = [new Float64Array(columnCount(plan)), new Float64Array(columnCount(plan))];
     for (let band = 0; band < bands; band++) {
-      fillColumns(plan, separate, bands, band, expected);
-      fillColumns(mixed, sums, bands, band, found);
+      fillColumns(plan, { products: separate, squares, bands }, band, expected);
+      fillColumns(mixed, { products: sums, squares, bands }, band, found);
       for (const [c, value] of expected.entries()) expect(found[c]).toBeCloseTo(value, 13);
       expect(found[columnCount(plan) - 1]).toBe(1);
     }
