@@ -1,6 +1,6 @@
 // job.ts: everything a worker needs to know to do its share of a sweep: plain data, no functions.
 import type { ResponsePlan } from "../bands/responses.js";
-import type { View } from "../grid/view.js";
+import type { View } from "../grid/grid.js";
 import type { Denominator } from "../kernel/kernel.js";
 import type { LevelAxis } from "../spectrum/axis.js";
 

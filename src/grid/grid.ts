@@ -1,7 +1,14 @@
 // grid.ts: what the rest of the program knows of a band grid on disk: facts, what to read, and a block of k points.
-import type { View } from "./view.js";
+import type { PatchCells } from "./patches.js";
 
 export type Triple = readonly [number, number, number];
+
+/** A contained sub-mesh: every `stride`-th point along the periodic directions, starting `shift` steps in. Plain data. */
+export interface View {
+  readonly stride: number;
+  /** In steps of the stored mesh, each 0 .. stride - 1; 0 where the mesh does not repeat. */
+  readonly shift: Triple;
+}
 
 /** A moment array of the grid. `directions` is 3 (x, y, z) or 1 (scalar). */
 export interface MomentFacts {
@@ -40,6 +47,11 @@ export interface GridFacts {
   readonly bytes: number;
   /** Set where these are the facts of a contained sub-mesh; divisions, offset and points are then the sub-mesh's. */
   readonly view?: View;
+  /**
+   * Set where these are the facts of a patch: divisions and offset are those of the finer mesh that its points belong to, `points` counts
+   * the stored ones, cell after cell.
+   */
+  readonly patch?: PatchCells;
 }
 
 /** Which matrices a pass needs. Energies always come. */

@@ -5,13 +5,14 @@ import { dataFault } from "../base/errors.js";
 import type { ArrayPlan } from "./arrays.js";
 import { factsOf, type ManifestFacts } from "./checks.js";
 import { manifestFault } from "./explain.js";
-import { fingerprint } from "./fingerprint.js";
-import type { GridFacts } from "./grid.js";
+import { combined, fingerprint } from "./fingerprint.js";
+import type { GridFacts, View } from "./grid.js";
 import { parseJson, quoted, readManifestBytes, reasonOf } from "./jsontext.js";
 import { type Manifest, manifestName, manifestSchema } from "./manifest.js";
+import { checkDisjoint, checkKinship, type PatchCells, patchDirectory, patchMesh, readPatchCells } from "./patches.js";
 import { planArray } from "./plan.js";
 import { energyUnits, hessianUnits, momentUnits, velocityUnits } from "./units.js";
-import { type View, viewFacts } from "./view.js";
+import { viewFacts } from "./view.js";
 
 /** An open band grid: facts and where its numbers lie. Plain data, safe to send to a worker; holds no file open. */
 export interface Grid {
@@ -20,6 +21,8 @@ export interface Grid {
   readonly arrays: readonly ArrayPlan[];
   /** Names of arrays whose slowest axis is not k: they are read in many small pieces. */
   readonly slowArrays: readonly string[];
+  /** Finer data that replace cells of this grid's mesh; empty for a view and for a patch. */
+  readonly patches: readonly Grid[];
   /** Whatever the manifest keeps under provenance. */
   readonly provenance: unknown;
 }
@@ -33,16 +36,46 @@ export function openGrid(directory: string, view?: View): Grid {
   checkDirectory(directory);
   const bytes = readManifestBytes(join(directory, manifestName));
   const manifest = parseManifest(bytes);
-  const facts = factsOf(manifest, manifestName);
+  const alone = openArrays(directory, bytes, manifest, factsOf(manifest, manifestName));
+  // A sub-mesh is asked for to see how the mesh converges: patches would hide that.
+  if (view !== undefined) return { ...alone, facts: viewFacts(alone.facts, view) };
+  const patches = (manifest.patches ?? []).map((name) => openPatch(alone.facts, name));
+  if (patches.length === 0) return alone;
+  checkDisjoint(patches.map(({ facts }) => facts.patch as PatchCells));
+  const { facts } = alone;
+  const sha256 = combined([facts.sha256, ...patches.map((patch) => patch.facts.sha256)]);
+  const total = patches.reduce((sum, patch) => sum + patch.facts.bytes, facts.bytes);
+  return { ...alone, facts: { ...facts, sha256, bytes: total }, patches };
+}
+
+/** A grid without its patches. */
+function openArrays(directory: string, bytes: Uint8Array, manifest: Manifest, facts: ManifestFacts): Grid {
   const arrays = planArrays(directory, manifest, facts);
   const size = arrays.flatMap((array) => array.files).reduce((sum, file) => sum + file.bytes, 0);
-  const stored = { directory: resolve(directory), ...facts, sha256: fingerprint(bytes, arrays), bytes: size };
   return {
-    facts: view === undefined ? stored : viewFacts(stored, view),
+    facts: { directory: resolve(directory), ...facts, sha256: fingerprint(bytes, arrays), bytes: size },
     arrays,
     slowArrays: arrays.filter((array) => array.axes[0] !== "k" && array.points > 1).map((array) => array.name),
+    patches: [],
     provenance: manifest.provenance,
   };
+}
+
+/** A patch that the grid of `parent` lists. */
+function openPatch(parent: GridFacts, name: string): Grid {
+  const directory = patchDirectory(parent.directory, name);
+  const bytes = readManifestBytes(join(directory, manifestName));
+  const manifest = parseManifest(bytes);
+  const where = `${name}/${manifestName}`;
+  const cure = "Give it patch in place of mesh, and no patches of its own.";
+  if (manifest.patch === undefined || manifest.mesh !== undefined) throw dataFault(`${where}: this is no patch`, cure);
+  if (manifest.patches !== undefined && manifest.patches.length > 0)
+    throw dataFault(`${where}: a patch has no patches of its own`, cure);
+  const patch = readPatchCells(directory, name, manifest.patch, parent);
+  const facts = factsOf(manifest, where, { ...patchMesh(parent, patch), patch });
+  const grid = openArrays(directory, bytes, manifest, facts);
+  checkKinship(parent, grid.facts, name);
+  return grid;
 }
 
 /** The checked manifest in `bytes`; throws a data Fault for the first thing wrong with it. */

@@ -1,13 +1,6 @@
 // view.ts: a sub-mesh that a stored mesh contains, read as if it were a grid of its own: every s-th point, from a shifted start.
 import { usageFault } from "../base/errors.js";
-import type { Block, BlockReader, GridFacts, MatrixBlock, Triple } from "./grid.js";
-
-/** Every `stride`-th point of a stored mesh along its periodic directions, starting `shift` steps in. Plain data. */
-export interface View {
-  readonly stride: number;
-  /** In steps of the stored mesh, each 0 .. stride - 1; 0 where the mesh does not repeat. */
-  readonly shift: Triple;
-}
+import type { Block, BlockReader, GridFacts, MatrixBlock, Triple, View } from "./grid.js";
 
 const goldenPart = (Math.sqrt(5) - 1) / 2;
 
