@@ -109,6 +109,19 @@ export interface PanelOptions {
   levelTicks: boolean;
   /** Prefix of the ids in the markup, unique within the page. */
   idPrefix: string;
+  /** Ticks of an axis that does not count eV, as places and labels; left out: levels, with a rule at 0. */
+  ticks?: readonly { readonly at: number; readonly label: string }[];
+  /** Marked places, e.g. peaks. */
+  dots?: readonly Dot[];
+}
+
+/** A marked place; hollow where it is not to be relied on. */
+export interface Dot {
+  x: number;
+  value: number;
+  error?: number;
+  colour: string;
+  hollow: boolean;
 }
 
 /**
@@ -136,7 +149,12 @@ export function panelMarkup(
     x: { domain: domainX, axis: null },
     y: { domain: range.map((bound) => bound * scale), axis: null },
     marks: [
-      Plot.gridX({ stroke: tone.grid, strokeOpacity: 1, ticks: 9 }),
+      options.ticks
+        ? Plot.gridX(
+            options.ticks.map(({ at }) => at),
+            { stroke: tone.grid, strokeOpacity: 1 },
+          )
+        : Plot.gridX({ stroke: tone.grid, strokeOpacity: 1, ticks: 9 }),
       Plot.gridY({ stroke: tone.grid, strokeOpacity: 1, ticks: tickCount(frame) }),
       Plot.ruleY([0], { stroke: tone.zero, strokeWidth: 1 }),
       ...(domainX[0] <= 0 && domainX[1] >= 0
@@ -144,13 +162,41 @@ export function panelMarkup(
         : []),
       ...traces.flatMap((trace) => marksOf(levels, trace, scale)),
       Plot.axisY({ ...ticks, ticks: tickCount(frame) }),
-      ...(options.levelTicks ? [Plot.axisX({ ...ticks, ticks: 9 })] : []),
+      ...dotMarks(options.dots ?? [], scale),
+      ...axisBelow(options, ticks),
     ],
   });
   const inner = compactPaths(
     renamedClips(String(svg.innerHTML).replace(/<style>[\s\S]*?<\/style>/g, ""), options.idPrefix),
   );
   return `<g transform="translate(${frame.x},${frame.y})" font-size="11" text-anchor="middle">${inner}</g>`;
+}
+
+/** Ticks below: of levels by themselves, of another axis as told. */
+function axisBelow(options: PanelOptions, style: object): Plot.Markish[] {
+  if (!options.levelTicks) return [];
+  const { ticks } = options;
+  if (ticks === undefined) return [Plot.axisX({ ...style, ticks: 9 })];
+  const labels = new Map(ticks.map(({ at, label }) => [at, label]));
+  return [Plot.axisX([...labels.keys()], { ...style, tickFormat: (at: number) => labels.get(at) ?? "" })];
+}
+
+/** Marked places with their bars. */
+function dotMarks(dots: readonly Dot[], scale: number): Plot.Markish[] {
+  if (dots.length === 0) return [];
+  const barred = dots.filter(({ error }) => error !== undefined && Number.isFinite(error));
+  const at = (dot: Dot, bars: number): number => (dot.value + bars * (dot.error ?? 0)) * scale;
+  const bars = { x: (dot: Dot) => dot.x, y1: (dot: Dot) => at(dot, -1), y2: (dot: Dot) => at(dot, 1) };
+  return [
+    Plot.ruleX(barred, { ...bars, stroke: (dot: Dot) => dot.colour, strokeWidth: 1.4, clip: true }),
+    Plot.dot(dots, {
+      x: (dot: Dot) => dot.x,
+      y: (dot: Dot) => at(dot, 0),
+      r: 3.6,
+      stroke: (dot: Dot) => dot.colour,
+      fill: (dot: Dot) => (dot.hollow ? tone.paper : dot.colour),
+    }),
+  ];
 }
 
 const tickCount = (frame: Frame): number => Math.max(3, Math.round(frame.heightPx / 36));
