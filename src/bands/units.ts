@@ -1,5 +1,5 @@
 // units.ts: prefactors of the Kubo formula and the units in which a response is told; every sign of a result is here.
-import { e2OverHbarS, perAngstromInPerCm } from "../base/constants.js";
+import { boltzmannEvPerK, e2OverHbarS, hbarEvS, perAngstromInPerCm } from "../base/constants.js";
 import { usageFault } from "../base/errors.js";
 import type { GridFacts } from "../grid/grid.js";
 import { cellArea, cellVolume, length } from "../zone/lattice.js";
@@ -84,4 +84,30 @@ export function responseUnit(carrier: string, facts: Facts, wanted?: string): Re
     );
   const sign = carrier === "charge" ? -1 : 1;
   return { unit: found.unit, factor: sign * found.factor * facts.electronsPerBand };
+}
+
+/**
+ * The thermoelectric counterpart of a response, alpha in j = sigma E - alpha grad T, from the zone mean of
+ * integral de (-df/de) ((e - mu) / kT) sum_n theta(e - E_n) Omega_n: value = factor * mean, with -k_B/e and the prefactor of the
+ * response itself. A current per field in S/m becomes one per temperature gradient in A/(m K), S becomes A; (hbar/e) and (hbar/2e)
+ * stay before it as they stand in the response's unit.
+ */
+export function thermalUnit(carrier: string, facts: Facts, wanted?: string): ResponseUnit {
+  const { unit, factor } = responseUnit(carrier, facts, wanted);
+  const flux = /^\(hbar\/2?e\) /.exec(unit)?.[0] ?? "";
+  const quantum = e2OverHbarS / (2 * Math.PI);
+  if (unit === "e^2/h") return { unit: "A/K", factor: -boltzmannEvPerK * quantum * factor };
+  if (unit === "e/2pi") return { unit: "(hbar/e) A/K", factor: -boltzmannEvPerK * quantum * factor };
+  const perMetre = unit.endsWith("S/cm") ? 100 : 1;
+  return { unit: `${flux}A/(m K)`, factor: -boltzmannEvPerK * perMetre * factor };
+}
+
+/**
+ * Drude weight sigma_aa / tau = (e^2 / hbar^2) integral d^dk/(2 pi)^d sum_n (-df/dE) (dE_n/dk_a)^2 from the zone mean of
+ * sum_n (-df/dE) (dE_n/dk_a)^2 (eV angstrom^2): (S/m)/s, or for a layer S/s.
+ */
+export function drudeUnit(facts: Pick<Facts, "vectorsA" | "periodic" | "electronsPerBand">): ResponseUnit {
+  const perSecond = (e2OverHbarS / hbarEvS) * facts.electronsPerBand;
+  if (facts.periodic === 2) return { unit: "S/s", factor: perSecond / cellArea(facts.vectorsA) };
+  return { unit: "(S/m)/s", factor: (perSecond * perAngstromInPerCm * 100) / cellVolume(facts.vectorsA) };
 }

@@ -21,6 +21,7 @@ const typedSweepOptions = {
   degenerate: typedNumber().optional(),
   broaden: typedNumber().optional(),
   unit: z.string().optional(),
+  thermal: z.boolean().optional(),
 };
 
 const typedRunOptions = z.object({ job: z.string().optional(), workers: typedWhole(1).optional() });
@@ -66,6 +67,7 @@ interface TypedStudy<T> {
 export function studyOptions<T>(command: Command, { study, schema, own }: TypedStudy<T>): T {
   const typed = validated(z.object({ ...typedSweepOptions, ...own }), command.opts(), study);
   const given = Object.fromEntries(Object.entries(typed).filter(([, value]) => value !== undefined));
+    .option("--thermal", "the Mott integral of every response too: the current that a temperature gradient drives")
   const { job } = validated(typedRunOptions, command.opts(), study);
   return validated(schema, { ...(job === undefined ? {} : readJob(job, study)), ...given }, study);
 }

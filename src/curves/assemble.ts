@@ -1,7 +1,14 @@
 // assemble.ts: summed spectra -> tables of value, error, electrons and density of states on the asked levels and temperatures.
 import { coarseNodes, type LevelAxis } from "../spectrum/axis.js";
 import type { Sections } from "../spectrum/sections.js";
-import { type CurveSampler, occupiedWeight, sampleCurves, steppedWeight, weightDensity } from "./occupation.js";
+import {
+  type CurveSampler,
+  densityReading,
+  occupiedReading,
+  type Reading,
+  sampleCurves,
+  steppedWeight,
+} from "./occupation.js";
 import type { Table } from "./result.js";
 import { spreadSampler } from "./spread.js";
 
@@ -23,50 +30,62 @@ export type ColumnCurves = Float64Array[][];
 const scaledCurves = (curves: ColumnCurves, factor: number): ColumnCurves =>
   curves.map((rows) => rows.map((row) => row.map((value) => value * factor)));
 
+/** Zone means read off one named spectrum. */
+export function curvesRead(sections: Sections, name: string, facts: SpectraFacts, reading: Reading): ColumnCurves {
+  const { axis, columns, points } = facts;
+  const [base, nodes] = [sections[`${name}.base`], sections[`${name}.nodes`]];
+  const sampler = reading.read({ axis: axis.nodes, columns, base, nodes });
+  return scaledCurves(sampleCurves(sampler, axis, columns), 1 / points);
+}
+
 /** Zone means of the occupied weight of one named spectrum. The plain mesh sum at T = 0 uses its exact steps. */
 export function occupiedCurves(sections: Sections, name: string, facts: SpectraFacts): ColumnCurves {
   const { axis, columns, points } = facts;
-  const base = sections[`${name}.base`];
-  const sampler = occupiedWeight({ axis: axis.nodes, columns, base, nodes: sections[`${name}.nodes`] });
-  const curves = sampleCurves(sampler, axis, columns);
+  const curves = curvesRead(sections, name, facts, occupiedReading);
   const steps = sections[`${name}.steps`];
   if (steps !== undefined)
     for (const [t, temperature] of axis.temperaturesK.entries())
-      if (temperature === 0) curves[t] = steppedWeight(base, steps, columns);
-  return scaledCurves(curves, 1 / points);
+      if (temperature === 0) {
+        const stepped = steppedWeight(sections[`${name}.base`], steps, columns);
+        curves[t] = stepped.map((row) => row.map((value) => value / points));
+      }
+  return curves;
 }
 
-/** States per eV and cell: [temperature][level]. */
-export function densityOfStates(sections: Sections, name: string, facts: SpectraFacts): Table {
-  const { axis, columns, points, electronsPerBand } = facts;
-  const levelStep = axis.nodesPerLevel * axis.nodes.stepEv;
-  const last = columns - 1;
-  const weights = {
-    axis: axis.nodes,
-    columns,
-    base: sections[`${name}.base`],
-    nodes: sections[`${name}.nodes`],
-  };
-  const smooth = sampleCurves(weightDensity(weights, levelStep), axis, columns);
+/** Energy over which densities at 0 K are taken: the step of the levels. */
+export const resolutionOf = (axis: LevelAxis): number => axis.nodesPerLevel * axis.nodes.stepEv;
+
+/** Weight per eV of one named spectrum, zone means. The plain mesh sum at T = 0 uses its exact steps. */
+export function densityCurves(sections: Sections, name: string, facts: SpectraFacts): ColumnCurves {
+  const { axis, columns, points } = facts;
+  const levelStep = resolutionOf(axis);
+  const curves = curvesRead(sections, name, facts, densityReading(levelStep));
   const steps = sections[`${name}.steps`];
+  if (steps === undefined || axis.levelsEv.length === 1) return curves;
   return axis.temperaturesK.map((temperature, t) =>
-    smooth[t].map((row, level) => {
-      const exact = temperature === 0 && steps !== undefined && axis.levelsEv.length > 1;
-      const perEv = exact ? steps[Math.max(1, level) * columns + last] / levelStep : row[last];
-      return (perEv * electronsPerBand) / points;
-    }),
+    temperature > 0
+      ? curves[t]
+      : curves[t].map((_, level) => {
+          const at = Math.max(1, level) * columns;
+          return steps.slice(at, at + columns).map((value) => value / (levelStep * points));
+        }),
   );
 }
 
 /** Error bars of all columns from the contained sub-meshes; NaN where the mesh contains none. */
-export function spreadCurves(sections: Sections, name: string, facts: SpectraFacts): ColumnCurves {
+export function spreadCurves(
+  sections: Sections,
+  name: string,
+  facts: SpectraFacts,
+  reading: Reading = occupiedReading,
+): ColumnCurves {
   const { axis, columns, points, subMeshes } = facts;
   if (subMeshes === undefined)
     return axis.temperaturesK.map(() => Array.from(axis.levelsEv, () => new Float64Array(columns).fill(Number.NaN)));
   const nodes = coarseNodes(axis);
   const perSub = subMeshes.count / points;
   const samplers = Array.from({ length: subMeshes.count }, (_, i): CurveSampler => {
-    const sampler = occupiedWeight({
+    const sampler = reading.read({
       axis: nodes,
       columns,
       base: sections[`${name}.sub${i}.base`],

@@ -66,6 +66,26 @@ export function occupiedWeight(weights: NodeWeights): CurveSampler {
   };
 }
 
+/** A way to read curves off weights on nodes: linear in the weights. */
+export interface Reading {
+  readonly read: (weights: NodeWeights) => CurveSampler;
+  /** Factor for what was read at `warmK` to stand for `askedK`, where weights are too rough to be read colder. */
+  readonly warmed: (askedK: number, warmK: number) => number;
+  /** The most by which the reading can err where the occupied weight is unsure by 1 at every level. */
+  readonly gain: (temperatureK: number) => number;
+}
+
+/** Reads occupied weight: the curves of responses. */
+export const occupiedReading: Reading = { read: occupiedWeight, warmed: () => 1, gain: () => 1 };
+
+/** Reads weight per eV; `resolutionEv` as of weightDensity. */
+export const densityReading = (resolutionEv: number): Reading => ({
+  read: (weights) => weightDensity(weights, resolutionEv),
+  warmed: () => 1,
+  // The integral of the magnitude of the kernel's slope: twice the height of -df/dE, or of the hat.
+  gain: (temperatureK) => (temperatureK > 0 ? 1 / (2 * temperatureK * boltzmannEvPerK) : 2 / resolutionEv),
+});
+
 /** Part of a unit hat centred at 0 that lies below x, -1 <= x <= 1. */
 const hatBelow = (x: number): number => (x < 0 ? (1 + x) ** 2 / 2 : 1 - (1 - x) ** 2 / 2);
 

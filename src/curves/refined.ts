@@ -3,8 +3,8 @@ import { boltzmannEvPerK } from "../base/constants.js";
 import type { HessianKind } from "../grid/grid.js";
 import { coarseNodes, indicatorNodes, type LevelAxis, type NodeAxis } from "../spectrum/axis.js";
 import type { Sections } from "../spectrum/sections.js";
-import { type ColumnCurves, densityOfStates, type SpectraFacts } from "./assemble.js";
-import { type CurveSampler, occupiedWeight, sampleCurves } from "./occupation.js";
+import { type ColumnCurves, columnTable, resolutionOf, type SpectraFacts } from "./assemble.js";
+import { type CurveSampler, densityReading, occupiedReading, type Reading, sampleCurves } from "./occupation.js";
 import type { Table } from "./result.js";
 
 /**
@@ -14,6 +14,10 @@ import type { Table } from "./result.js";
 const modelOrder = 3.4;
 /** Without second derivatives the models are of lower order. */
 const lowerOrder = 2;
+
+/** How the error of refined values falls with the mesh step: error ~ step^order. */
+export const modelOrderOf = (hessian: HessianKind): number => (hessian === "none" ? lowerOrder : modelOrder);
+
 /** From this many bands below the top on, sums over bands cut from plane waves are not to be trusted. */
 const untrustedBands = 2;
 /** Families let pass disagree alike where the crystal's symmetry makes them alike; calibrated likewise. */
@@ -43,30 +47,36 @@ export interface RefinedErrors {
 const defectDetail = 1 / 12;
 
 /**
- * Occupied weight of a refined mesh: the trees of cells at the asked temperature, and the neighbour defect at no less than the
+ * A reading of a refined mesh: the trees of cells at the asked temperature, and the neighbour defect at no less than the
  * temperature whose kT the mesh can follow (`detailEv`), so that a cold curve keeps no steps from single points.
  */
 function refinedSampler(
   sections: Sections,
   name: string,
-  axis: NodeAxis,
-  columns: number,
+  { axis, columns, reading }: HowRead,
   detailEv: number,
 ): CurveSampler {
-  const trees = samplerOf(sections, name, axis, columns);
-  const defect = samplerOf(sections, `${name}.defect`, axis, columns);
+  const trees = samplerOf(sections, name, { axis, columns, reading });
+  const defect = samplerOf(sections, `${name}.defect`, { axis, columns, reading });
   const part = new Float64Array(columns);
   return (levelEv, temperatureK, out) => {
+    const warmK = Math.max(temperatureK, detailEv / boltzmannEvPerK);
     trees(levelEv, temperatureK, out);
-    defect(levelEv, Math.max(temperatureK, detailEv / boltzmannEvPerK), part);
-    for (let c = 0; c < columns; c++) out[c] += part[c];
+    defect(levelEv, warmK, part);
+    const share = reading.warmed(temperatureK, warmK);
+    for (let c = 0; c < columns; c++) out[c] += share * part[c];
   };
 }
 
-/** Curves of all columns, zone means. */
-export function refinedCurves(sections: Sections, facts: RefinedFacts): ColumnCurves {
+/** Curves of all columns, zone means: of occupied weight, or of another reading, of densities for one. */
+export function refinedCurves(
+  sections: Sections,
+  facts: RefinedFacts,
+  reading: Reading = occupiedReading,
+): ColumnCurves {
   const { axis, columns, points } = facts;
-  const sampler = refinedSampler(sections, "refine", axis.nodes, columns, facts.regularEv * defectDetail);
+  const how = { axis: axis.nodes, columns, reading };
+  const sampler = refinedSampler(sections, "refine", how, facts.regularEv * defectDetail);
   return sampleCurves(
     (levelEv, temperatureK, out) => {
       sampler(levelEv, temperatureK, out);
@@ -77,16 +87,10 @@ export function refinedCurves(sections: Sections, facts: RefinedFacts): ColumnCu
   );
 }
 
-/**
- * States per eV and cell, [temperature][level]: the slope of the electrons of `refinedCurves` at the resolution of the levels, the
- * neighbour defect included and blurred alike.
- */
+/** States per eV and cell, [temperature][level]: the slope of the electrons of `refinedCurves` at the resolution of the levels. */
 export function refinedStates(sections: Sections, facts: RefinedFacts): Table {
-  const coldestK = (facts.regularEv * defectDetail) / boltzmannEvPerK;
-  const temperaturesK = facts.axis.temperaturesK.map((temperatureK) => Math.max(temperatureK, coldestK));
-  const trees = densityOfStates(sections, "refine", facts);
-  const defect = densityOfStates(sections, "refine.defect", { ...facts, axis: { ...facts.axis, temperaturesK } });
-  return trees.map((row, t) => row.map((perEv, level) => perEv + defect[t][level]));
+  const densities = refinedCurves(sections, facts, densityReading(resolutionOf(facts.axis)));
+  return columnTable(densities, facts.columns - 1, facts.electronsPerBand);
 }
 
 type Squares = (levelEv: number, temperatureK: number, out: Float64Array) => void;
@@ -115,29 +119,36 @@ function averaged(
 }
 
 /** Families that were let pass disagree by amounts of random sign: the root of the sum of their squares. */
-function samplingSquares(sections: Sections, axis: NodeAxis, columns: number): Squares {
+function samplingSquares(sections: Sections, { axis, columns, reading }: HowRead): Squares {
   const squares = sections["refine.square"];
-  return (levelEv, _temperatureK, out) => {
+  return (levelEv, temperatureK, out) => {
+    const gain = (likeness * reading.gain(temperatureK)) ** 2;
     const position = Math.min(axis.count - 1.001, Math.max(0, (levelEv - axis.startEv) / axis.stepEv));
     const node = Math.floor(position);
     const part = position - node;
     for (let c = 0; c < columns; c++)
-      out[c] = likeness ** 2 * ((1 - part) * squares[node * columns + c] + part * squares[(node + 1) * columns + c]);
+      out[c] = gain * ((1 - part) * squares[node * columns + c] + part * squares[(node + 1) * columns + c]);
   };
 }
 
-function samplerOf(sections: Sections, name: string, axis: NodeAxis, columns: number): CurveSampler {
-  return occupiedWeight({ axis, columns, base: sections[`${name}.base`], nodes: sections[`${name}.nodes`] });
+/** Along which nodes, for how many columns, and what. */
+interface HowRead {
+  readonly axis: NodeAxis;
+  readonly columns: number;
+  readonly reading: Reading;
 }
+
+const samplerOf = (sections: Sections, name: string, { axis, columns, reading }: HowRead): CurveSampler =>
+  reading.read({ axis, columns, base: sections[`${name}.base`], nodes: sections[`${name}.nodes`] });
 
 /**
  * What the models got wrong and the neighbours did not mend: the difference to the same calculation on a contained mesh of
  * `stride` times the step, scaled by 1 / (stride^3 - 1); without such a mesh a part of the neighbour defect.
  */
-function modelSquares(sections: Sections, facts: RefinedFacts): Squares {
+function modelSquares(sections: Sections, facts: RefinedFacts, reading: Reading): Squares {
   const { axis, columns, points, subMeshes } = facts;
-  const nodes = coarseNodes(axis);
-  const defect = samplerOf(sections, "refine.defect", axis.nodes, columns);
+  const how = { axis: axis.nodes, columns, reading };
+  const defect = samplerOf(sections, "refine.defect", how);
   const wrong = new Float64Array(columns);
   if (subMeshes === undefined)
     return (levelEv, temperatureK, out) => {
@@ -145,8 +156,8 @@ function modelSquares(sections: Sections, facts: RefinedFacts): Squares {
       for (let c = 0; c < columns; c++) out[c] = ((remainingDefect * wrong[c]) / points) ** 2;
     };
   const detail = facts.regularEv * defectDetail;
-  const fine = refinedSampler(sections, "refine", axis.nodes, columns, detail);
-  const coarse = refinedSampler(sections, "coarse", nodes, columns, detail * subMeshes.stride);
+  const fine = refinedSampler(sections, "refine", how, detail);
+  const coarse = refinedSampler(sections, "coarse", { ...how, axis: coarseNodes(axis) }, detail * subMeshes.stride);
   const ofFine = new Float64Array(columns);
   const ofCoarse = new Float64Array(columns);
   const scale = 1 / (subMeshes.stride ** (facts.hessian === "none" ? lowerOrder : modelOrder) - 1);
@@ -169,12 +180,24 @@ function widenNearTop(errors: ColumnCurves, curves: ColumnCurves, { hessian, ban
       if (curves[t][level][columns - 1] > bands - untrustedBands) for (let c = 0; c < columns; c++) row[c] *= 2;
 }
 
-/** Error bars of all columns. */
-export function refinedErrors(sections: Sections, facts: RefinedFacts, curves: ColumnCurves): RefinedErrors {
+/** Error bars of all columns of a reading; `curves` are those of occupied weight, which tell where the level stands among the bands. */
+export function refinedErrors(
+  sections: Sections,
+  facts: RefinedFacts,
+  curves: ColumnCurves,
+  reading: Reading = occupiedReading,
+): RefinedErrors {
   const { axis, columns } = facts;
   const warmth = (temperatureK: number): number => 2 * boltzmannEvPerK * temperatureK;
-  const sampling = averaged(samplingSquares(sections, indicatorNodes(axis), columns), columns, axis, warmth);
-  const model = averaged(modelSquares(sections, facts), columns, axis, (t) => Math.max(facts.regularEv / 4, warmth(t)));
+  const sampling = averaged(
+    samplingSquares(sections, { axis: indicatorNodes(axis), columns, reading }),
+    columns,
+    axis,
+    warmth,
+  );
+  const model = averaged(modelSquares(sections, facts, reading), columns, axis, (t) =>
+    Math.max(facts.regularEv / 4, warmth(t)),
+  );
   widenNearTop(model, curves, facts);
   return { sampling, model };
 }

@@ -16,6 +16,23 @@ export interface ResponseCurve {
   error_model: Table;
   /** The plain mesh sum. */
   points: Table;
+  /** The Mott integral, where it was asked for; zero at 0 K by definition. */
+  thermal?: CompanionCurve;
+}
+
+/** A companion of the responses, with its bar. */
+export interface CompanionCurve {
+  /** A response's thermoelectric counterpart: "A/(m K)", "(hbar/e) A/(m K)", for a layer "A/K", "(hbar/e) A/K". */
+  unit: string;
+  value: Table;
+  /** One standard bar, less well tested than that of a response. */
+  error: Table;
+}
+
+/** Drude weight along one axis: conductivity per scattering time. */
+export interface DrudeCurve extends CompanionCurve {
+  /** "drude:xx", "drude:yy" or "drude:zz"; the unit is (S/m)/s, for a layer S/s. */
+  name: string;
 }
 
 export interface CurvesResult {
@@ -35,6 +52,8 @@ export interface CurvesResult {
   doping_density_unit: "per_cm3" | "per_cm2";
   states_per_eV: Table;
   responses: ResponseCurve[];
+  /** One per axis along which the grid is periodic; absent in files of the first versions. */
+  drude?: DrudeCurve[];
   sampling: {
     method: "refine" | "cells" | "points";
     stored: number;

@@ -1,6 +1,6 @@
 // csv.ts: what does curves.csv look like?
 import { stringify } from "csv-stringify/sync";
-import type { CurvesResult } from "../curves/result.js";
+import type { CurvesResult, DrudeCurve } from "../curves/result.js";
 import { cleanLine } from "./clean.js";
 
 /**
@@ -8,18 +8,24 @@ import { cleanLine } from "./clean.js";
  * pandas, NumPy (genfromtxt and loadtxt), gnuplot, R and Julia all read as "not a number". An empty cell would not do: awk,
  * JavaScript and spreadsheet formulas silently read it as 0, and an error bar of zero is the opposite of an unknown one.
  */
-function cell(value: number): string {
+export function csvNumber(value: number): string {
   return Number.isFinite(value) ? String(value) : "NaN";
 }
 
 /** A heading that no spreadsheet takes for a formula. */
-function heading(text: string): string {
+export function heading(text: string): string {
   return cleanLine(text).replace(/^[=+\-@]+/, "");
+}
+
+/** Everything that has a bar: the responses, their Mott integrals where asked for, and the Drude weight. */
+function barredOf({ responses, drude = [] }: CurvesResult): DrudeCurve[] {
+  const thermal = responses.flatMap(({ name, thermal }) => (thermal ? [{ name: `${name} thermal`, ...thermal }] : []));
+  return [...responses, ...thermal, ...drude];
 }
 
 /** Headings of `curvesCsv`, in order. */
 export function curvesColumns(result: CurvesResult): string[] {
-  const responses = result.responses.flatMap(({ name, unit }) => [
+  const columns = barredOf(result).flatMap(({ name, unit }) => [
     heading(`${name} [${unit}]`),
     heading(`${name} error`),
   ]);
@@ -31,7 +37,7 @@ export function curvesColumns(result: CurvesResult): string[] {
     "doping_per_cell",
     `doping_${result.doping_density_unit}`,
     "states_per_eV",
-    ...responses,
+    ...columns,
   ];
 }
 
@@ -51,8 +57,8 @@ export function curvesCsv(result: CurvesResult): string {
         result.doping_per_cell[t][e],
         result.doping_density[t][e],
         result.states_per_eV[t][e],
-        ...result.responses.flatMap(({ value, error }) => [value[t][e], error[t][e]]),
-      ].map(cell),
+        ...barredOf(result).flatMap(({ value, error }) => [value[t][e], error[t][e]]),
+      ].map(csvNumber),
     ),
   );
   return stringify([curvesColumns(result), ...rows]);

@@ -9,6 +9,8 @@ const tableOf = z.array(z.array(entry));
 const axis = z.array(z.number()).min(1);
 const count = z.int().nonnegative();
 
+const companion = z.looseObject({ unit: z.string(), value: tableOf, error: tableOf });
+
 const response = z.looseObject({
   name: z.string().min(1),
   unit: z.string(),
@@ -17,6 +19,7 @@ const response = z.looseObject({
   error_sampling: tableOf,
   error_model: tableOf,
   points: tableOf,
+  thermal: companion.optional(),
 });
 
 /** The border check of curves.json; fields that a later version adds pass through unchanged. */
@@ -41,6 +44,7 @@ const curvesSchema = z.looseObject({
   doping_density_unit: z.enum(["per_cm3", "per_cm2"]),
   states_per_eV: tableOf,
   responses: z.array(response),
+  drude: z.array(companion.extend({ name: z.string().min(1) })).optional(),
   sampling: z
     .object({ method: z.enum(["refine", "cells", "points"]), stored: count, samples: count, deepest: count })
     .catchall(z.union([entry, z.string()])),
@@ -49,17 +53,19 @@ const curvesSchema = z.looseObject({
 
 const cure = "Write the file again with `tidegauge sweep GRID --out DIR`; it must not be edited by hand.";
 
+const named = (tables: Record<string, number[][]>, name: string): [string, number[][]][] =>
+  Object.entries(tables).map(([key, rows]) => [`${key} of ${name}`, rows]);
+
 /** Every table of a result, with the name to show when its shape is wrong. */
 function tablesOf(result: CurvesResult): [string, number[][]][] {
   const { electrons_per_cell, doping_per_cell, doping_density, states_per_eV } = result;
   return [
     ...Object.entries({ electrons_per_cell, doping_per_cell, doping_density, states_per_eV }),
-    ...result.responses.flatMap(({ name, value, error, error_sampling, error_model, points }) =>
-      Object.entries({ value, error, error_sampling, error_model, points }).map(([key, rows]): [string, number[][]] => [
-        `${key} of ${name}`,
-        rows,
-      ]),
-    ),
+    ...result.responses.flatMap(({ name, value, error, error_sampling, error_model, points, thermal }) => [
+      ...named({ value, error, error_sampling, error_model, points }, name),
+      ...(thermal ? named({ value: thermal.value, error: thermal.error }, `${name} thermal`) : []),
+    ]),
+    ...(result.drude ?? []).flatMap(({ name, value, error }) => named({ value, error }, name)),
   ];
 }
 

@@ -25,6 +25,7 @@ export const sweepOptions = z.strictObject({
   degenerate: z.number().min(0).max(10).default(1e-5),
   broaden: z.number().min(0).max(100).default(0),
   unit: z.string().max(40).optional(),
+  thermal: z.boolean().optional(),
 });
 
 export type SweepOptions = z.infer<typeof sweepOptions>;

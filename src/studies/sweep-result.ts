@@ -1,73 +1,64 @@
 // sweep-result.ts: how do the spectra of a sweep become its result: curves with bars, companions, notes?
+
+import { drudeUnit, type ResponseUnit, thermalUnit } from "../bands/units.js";
 import { productVersion } from "../base/version.js";
-import {
-  type ColumnCurves,
-  columnTable,
-  densityOfStates,
-  occupiedCurves,
-  type SpectraFacts,
-  spreadCurves,
-} from "../curves/assemble.js";
-import {
-  type RefinedErrors,
-  type RefinedFacts,
-  refinedCurves,
-  refinedErrors,
-  refinedStates,
-} from "../curves/refined.js";
-import type { CurvesResult, ResponseCurve, Table } from "../curves/result.js";
+import { columnTable, occupiedCurves } from "../curves/assemble.js";
+import type { CompanionCurve, CurvesResult, DrudeCurve, ResponseCurve, Table } from "../curves/result.js";
 import { columnCount } from "../engine/columns.js";
 import { counters } from "../engine/refiner.js";
 import type { GridFacts } from "../grid/grid.js";
 import { cellArea, cellVolume } from "../zone/lattice.js";
 import { smallestSubMeshes, spreadSubMeshes } from "../zone/mesh.js";
 import { countBelow } from "./reference.js";
+import { curvesOf, type ReadCurves, spectraFacts } from "./sweep-curves.js";
 import { type Computed, type SweepPlan, unitOf } from "./sweep-plan.js";
 
 /** Told to every reader of a result. */
 export const intrinsicOnly = "intrinsic only, rigid band";
 
-function spectraFacts({ job, facts }: SweepPlan): SpectraFacts {
-  return {
-    axis: job.axis,
-    columns: columnCount(job.plan),
-    points: facts.points,
-    electronsPerBand: facts.electronsPerBand,
-    dimension: facts.periodic,
-    subMeshes: job.method === "refine" ? smallestSubMeshes(facts) : spreadSubMeshes(facts),
-  };
+/** The root of the sum of the squares of both causes, of one column. */
+function errorTable({ sampling, model }: ReadCurves, column: number, factor: number): Table {
+  const [a, b] = [sampling, model].map((errors) => columnTable(errors, column, Math.abs(factor)));
+  return a.map((row, t) => row.map((value, level) => Math.hypot(value, b[t][level])));
 }
 
-const refinedFacts = (planned: SweepPlan): RefinedFacts => {
-  const { hessian, bands } = planned.facts;
-  return { ...spectraFacts(planned), regularEv: planned.regularEv, hessian, bands };
-};
-
-/** Error bars by cause, zone means. */
-function errorCurves(planned: SweepPlan, { sections, refined }: Computed, curves: ColumnCurves): RefinedErrors {
-  const known = spectraFacts(planned);
-  if (refined !== undefined) return refinedErrors(sections, refinedFacts(planned), curves);
-  const sampling = spreadCurves(sections, planned.job.method, known);
-  return { sampling, model: sampling.map((rows) => rows.map((row) => new Float64Array(row.length))) };
-}
-
-function responseCurves(planned: SweepPlan, computed: Computed, curves: ColumnCurves): ResponseCurve[] {
+function responseCurves(
+  planned: SweepPlan,
+  computed: Computed,
+  read: ReadCurves,
+  thermal: ReadCurves | undefined,
+): ResponseCurve[] {
   const { job, facts, options } = planned;
-  const points = job.method === "points" ? curves : occupiedCurves(computed.sections, "points", spectraFacts(planned));
-  const errors = errorCurves(planned, computed, curves);
+  const known = spectraFacts(planned);
+  const points = job.method === "points" ? read.values : occupiedCurves(computed.sections, "points", known);
   return job.plan.columns.map(({ name, carrier }, column): ResponseCurve => {
     const { unit, factor } = unitOf(carrier, facts, options);
-    const sampling = columnTable(errors.sampling, column, Math.abs(factor));
-    const model = columnTable(errors.model, column, Math.abs(factor));
-    return {
+    const curve: ResponseCurve = {
       name,
       unit,
-      value: columnTable(curves, column, factor),
-      error: sampling.map((row, t) => row.map((value, level) => Math.hypot(value, model[t][level]))),
-      error_sampling: sampling,
-      error_model: model,
+      value: columnTable(read.values, column, factor),
+      error: errorTable(read, column, factor),
+      error_sampling: columnTable(read.sampling, column, Math.abs(factor)),
+      error_model: columnTable(read.model, column, Math.abs(factor)),
       points: columnTable(points, column, factor),
     };
+    if (thermal !== undefined) curve.thermal = companion(thermal, column, thermalUnit(carrier, facts, options.unit));
+    return curve;
+  });
+}
+
+/** One column of the curves as a companion of the responses. */
+const companion = (read: ReadCurves, column: number, { unit, factor }: ResponseUnit): CompanionCurve => ({
+  unit,
+  value: columnTable(read.values, column, factor),
+  error: errorTable(read, column, factor),
+});
+
+function drudeCurves({ job, facts }: SweepPlan, density: ReadCurves): DrudeCurve[] {
+  const first = job.plan.columns.length;
+  return job.plan.drude.map((direction, i) => {
+    const axis = "xyz"[direction];
+    return { name: `drude:${axis}${axis}`, ...companion(density, first + i, drudeUnit(facts)) };
   });
 }
 
@@ -146,15 +137,14 @@ function samplingOf({ job, facts }: SweepPlan, { sections, refined }: Computed):
 /** The result of a computed sweep. */
 export function assembleResult(planned: SweepPlan, computed: Computed): CurvesResult {
   const { job, facts, reference, options } = planned;
-  const { sections } = computed;
-  const known = spectraFacts(planned);
-  const curves = computed.refined
-    ? refinedCurves(sections, refinedFacts(planned))
-    : occupiedCurves(sections, job.method, known);
+  const curves = curvesOf(planned, computed);
+  const occupied = curves.occupied();
+  const slopes = curves.density();
+  const last = columnCount(job.plan) - 1;
   const levels = Array.from(job.axis.levelsEv, (_, i) =>
     options.points === 1 ? options.from : options.from + (i * (options.to - options.from)) / (options.points - 1),
   );
-  const electrons = columnTable(curves, known.columns - 1, facts.electronsPerBand);
+  const electrons = columnTable(occupied.values, last, facts.electronsPerBand);
   const doping = dopingTable(electrons, levels, planned);
   const density = densityPerCell(facts);
   const { title, sha256, bands, divisions, periodic, points } = facts;
@@ -170,10 +160,9 @@ export function assembleResult(planned: SweepPlan, computed: Computed): CurvesRe
     doping_per_cell: doping,
     doping_density: doping.map((row) => row.map((value) => value * density)),
     doping_density_unit: periodic === 3 ? "per_cm3" : "per_cm2",
-    states_per_eV: computed.refined
-      ? refinedStates(sections, refinedFacts(planned))
-      : densityOfStates(sections, job.method, known),
-    responses: responseCurves(planned, computed, curves),
+    states_per_eV: columnTable(slopes.values, last, facts.electronsPerBand),
+    responses: responseCurves(planned, computed, occupied, options.thermal ? curves.thermal() : undefined),
+    drude: drudeCurves(planned, slopes),
     sampling: samplingOf(planned, computed),
     notes: notesOf(planned),
   };

@@ -8,6 +8,7 @@ import { assembleResult } from "./sweep-result.js";
 
 export { type SweepOptions, sweepOptions } from "./sweep-plan.js";
 
+export { intrinsicOnly } from "./sweep-result.js";
 /** Samples that may be spent where the user names no number. */
 const defaultSamples = (points: number): number => 200_000 + 100 * points;
 
