@@ -127,7 +127,8 @@ function dopedPoint(doped: Doped, perCell: number, temperatures: readonly number
  * inside the cells. Throws usage Faults for a temperature that the sweep has not, and for a doping outside its window.
  */
 export function readDope(curves: CurvesResult, options: ReadingOptions, meshEv: number): DopeResult {
-  const { temperature, substitute, sites, prominence } = options;
+  const { temperature, doping, dopingUnit, substitute, sites, prominence } = options;
+  const read = { temperature, ...(doping === undefined ? {} : { doping }), dopingUnit, substitute, sites, prominence };
   const missing = temperature.find((kelvin) => !curves.temperature_K.includes(kelvin));
   if (missing !== undefined)
     throw usageFault(
@@ -146,7 +147,7 @@ export function readDope(curves: CurvesResult, options: ReadingOptions, meshEv: 
     format: "tidegauge.dope/1",
     version: productVersion,
     grid: curves.grid,
-    job: { ...curves.job, study: "dope", ...options },
+    job: { ...curves.job, study: "dope", ...read },
     reference_eV: curves.reference_eV,
     window_eV: [curves.level_eV[0], curves.level_eV[curves.level_eV.length - 1]],
     temperature_K: asked.map((t) => curves.temperature_K[t]),
