@@ -108,6 +108,7 @@ function termsOf(name: string, facts: Facts): { carrier: string; terms: readonly
   if (what === "hall" && component === undefined) {
     const mean = facts.periodic === 3 ? rotationalMean : layerMean;
     if (polarised) return { carrier, terms: mean };
+    // Without a component there is no scalar to average to: the z component of the antisymmetric vector, in a crystal as in a layer.
     const plane: Term[] = [
       [0, 1, 0, 1 / 2],
       [1, 0, 0, -1 / 2],

@@ -78,7 +78,7 @@ describe("response names", () => {
     expect(written(["spin:hall"], layer)).toEqual({ "spin:hall": { "spin.z:xy": 1 / 2, "spin.z:yx": -1 / 2 } });
   });
 
-  it("charge:hall and a scalar's hall are (xy - yx) / 2", () => {
+  it("charge:hall and a scalar's hall are (xy - yx) / 2: z of the Hall vector (1/2) eps_abg sigma_ab, in a crystal too", () => {
     for (const facts of [crystal, layer])
       expect(written(["charge:hall", "valley:hall"], facts)).toEqual({
         "charge:hall": { "charge:xy": 1 / 2, "charge:yx": -1 / 2 },

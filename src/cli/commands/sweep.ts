@@ -23,7 +23,7 @@ Examples:
 
 A response is CURRENT:FLOW FIELD:POLARISATION. spin:xy:z is the current of spin z along x under a field along y; charge:xy is the
 anomalous Hall conductivity; any moment of the grid may stand for spin. <moment>:hall is (1/6) sum eps_abg sigma^g_ab (in a layer the
-mean of xy:z and -yx:z), <moment>:all means every component.`;
+mean of xy:z and -yx:z), charge:hall is (xy - yx) / 2, <moment>:all means every component.`;
 
 /** Adds the command to the program. */
 export function register(program: Command, context: Context): void {
