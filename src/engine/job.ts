@@ -1,6 +1,7 @@
 // job.ts: everything a worker needs to know to do its share of a sweep: plain data, no functions.
 import type { ResponsePlan } from "../bands/responses.js";
 import type { View } from "../grid/grid.js";
+import type { Grid } from "../grid/open.js";
 import type { Denominator } from "../kernel/kernel.js";
 import type { LevelAxis } from "../spectrum/axis.js";
 
@@ -35,15 +36,24 @@ export interface RefineJob extends SweepJob {
 export interface Task {
   readonly first: number;
   readonly count: number;
+  /** Which of the grid's patches the points are of; the parent's mesh where left out. */
+  readonly patch?: number;
 }
 
 const mostTasks = 64;
 const leastPointsPerTask = 32;
 
-/** Cuts the stored points into tasks; depends on the number of points alone, so that sums come out the same for any number of workers. */
-export function cutTasks(points: number): Task[] {
+/** Cuts stored points into tasks; depends on their number alone, so that sums come out the same for any number of workers. */
+function cut(points: number, patch?: number): Task[] {
   const count = Math.max(leastPointsPerTask, Math.ceil(points / mostTasks));
   const tasks: Task[] = [];
-  for (let first = 0; first < points; first += count) tasks.push({ first, count: Math.min(count, points - first) });
+  for (let first = 0; first < points; first += count)
+    tasks.push({ first, count: Math.min(count, points - first), ...(patch === undefined ? {} : { patch }) });
   return tasks;
 }
+
+/** Tasks of the parent's mesh, and after them of each patch. */
+export const cutTasks = (grid: Pick<Grid, "facts" | "patches">): Task[] => [
+  ...cut(grid.facts.points),
+  ...grid.patches.flatMap(({ facts }, patch) => cut(facts.points, patch)),
+];

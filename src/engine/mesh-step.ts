@@ -23,7 +23,11 @@ const fallbackEv = 0.1;
  * step. Regularises the denominators of the neighbour defect.
  */
 export function resolvedEnergy(facts: GridFacts, fromEv: number, toEv: number): number {
-  const reader = openReader(openGrid(facts.directory, facts.view), { velocity: [0, 1, 2], moments: [], hessian: false });
+  const reader = openReader(openGrid(facts.directory, facts.view), {
+    velocity: [0, 1, 2],
+    moments: [],
+    hessian: false,
+  });
   const edges = cellEdges(facts);
   const pass = createPairPass(facts.bands, [], { degenerateEv: 0, broadenEv: 0 });
   const slope = new Float64Array(3 * facts.bands);

@@ -1,15 +1,14 @@
 // pass.ts: one task of a sweep with the methods `points` and `cells`: stored points -> spectra.
-import type { BlockReader, GridFacts, Triple } from "../grid/grid.js";
-import { openGrid } from "../grid/open.js";
-import { openReader } from "../grid/reader.js";
+import type { GridFacts, Triple } from "../grid/grid.js";
 import type { MatrixRef, PointRef } from "../kernel/kernel.js";
 import { createPairPass } from "../kernel/pair.js";
 import { setEnd, storedSquares } from "../kernel/sets.js";
 import type { Sections } from "../spectrum/sections.js";
-import { cellEdges, spreadSubMeshes, subMeshOf } from "../zone/mesh.js";
+import { spreadSubMeshes, subMeshOf } from "../zone/mesh.js";
 import { walkPoints } from "./blocks.js";
 import { columnCount, fillColumns } from "./columns.js";
 import type { SweepJob, Task } from "./job.js";
+import { openRegion, type Region } from "./regions.js";
 import { createBoxTally, createPointTally, type Tally } from "./tally.js";
 
 /** Widths (eV) that a band spans along each edge of its cell: |slope . edge|. */
@@ -42,10 +41,10 @@ function setWidths(point: PointRef, first: number, end: number, edges: readonly 
   }
 }
 
-/** Opens the reader a job needs; second derivatives only where a local model is made. */
-export function readerFor(job: SweepJob, hessian = false): BlockReader {
+/** Opens the region a task lies in for what a job needs; second derivatives only where a local model is made. */
+export function regionFor(job: SweepJob, task: Task, hessian = false): Region {
   const directions = job.method === "points" ? usedDirections(job) : [0, 1, 2];
-  return openReader(openGrid(job.directory, job.view), { velocity: directions, moments: job.plan.moments, hessian });
+  return openRegion(job, task, { velocity: directions, moments: job.plan.moments, hessian });
 }
 
 const usedDirections = ({ plan }: SweepJob): number[] =>
@@ -60,21 +59,21 @@ function tallies(job: SweepJob, facts: GridFacts): [string, Tally][] {
 
 /** Spectra of one task of a `points` or `cells` sweep. */
 export function meshPass(job: SweepJob, task: Task): Sections {
-  const reader = readerFor(job);
-  const { facts } = reader;
-  const { bands } = facts;
+  const region = regionFor(job, task);
+  const { parent, edges, weight } = region;
+  const { bands } = parent;
   const pass = createPairPass(bands, job.plan.products, job.denominator);
-  const kept = tallies(job, facts);
-  const sub = spreadSubMeshes(facts);
-  const edges = cellEdges(facts);
+  const kept = tallies(job, parent);
+  const sub = spreadSubMeshes(parent);
   const curvature = new Float64Array(job.plan.products.length * bands);
   const squares = new Float64Array(3 * bands);
   const widths = new Float64Array(edges.length);
   const values = new Float64Array(columnCount(job.plan));
-  walkPoints(reader, task, job.plan.moments, (flat, point) => {
+  walkPoints(region.reader, task, job.plan.moments, (flat, point) => {
+    if (!region.counts(flat)) return;
     pass.run(point, curvature);
     storedSquares(point, job.denominator.degenerateEv, squares);
-    const coset = sub === undefined ? 0 : subMeshOf(flat, facts, sub);
+    const coset = sub === undefined ? 0 : subMeshOf(region.cellOf(flat), parent, sub);
     let end = 0;
     for (let band = 0; band < bands; band++) {
       if (band === end) {
@@ -82,10 +81,11 @@ export function meshPass(job: SweepJob, task: Task): Sections {
         if (job.method !== "points") setWidths(point, band, end, edges, widths);
       }
       fillColumns(job.plan, { products: curvature, squares, bands }, band, values);
+      for (let c = 0; c < values.length; c++) values[c] *= weight;
       for (const [, tally] of kept) tally.add(point.energyEv[point.energyOffset + band], widths, values, coset);
     }
   });
-  reader.close();
+  region.reader.close();
   const sections: Sections = {};
   for (const [name, tally] of kept) tally.finish(sections, name);
   return sections;

@@ -2,44 +2,84 @@
 import type { Triple } from "../grid/grid.js";
 import { coarseNodes } from "../spectrum/axis.js";
 import type { Sections } from "../spectrum/sections.js";
-import { cellEdges, smallestSubMeshes, subMeshOf } from "../zone/mesh.js";
+import { smallestSubMeshes, subMeshOf } from "../zone/mesh.js";
 import { walkPoints } from "./blocks.js";
 import type { RefineJob, Task } from "./job.js";
-import { createLocalSampler } from "./local-sampler.js";
-import { readerFor } from "./pass.js";
-import { createRefiner } from "./refiner.js";
+import { allLinks, createLinkFinder } from "./links.js";
+import { createLocalSampler, type LocalSampler } from "./local-sampler.js";
+import { regionFor } from "./pass.js";
+import { createRefiner, type Refiner } from "./refiner.js";
+import type { Region } from "./regions.js";
 
 /** The coarser mesh only tells an error: its cells may disagree by more. */
 const coarseLeniency = 4;
+/** So may cells that patches replace: what their own models give serves the same comparison. */
+const replacedLeniency = 4;
 
-/** Spectra and counters of some runs of points, under `refine.` and, where the mesh contains a sub-mesh, `coarse.`. */
+/**
+ * Spectra and counters of some runs of points of one region, under `refine.`; where the parent's mesh contains a sub-mesh also that
+ * mesh's, under `coarse.`; and where patches replace cells, what the parent's own models give for those, under `replaced.`.
+ */
 export function refinePass(job: RefineJob, tasks: readonly Task[]): Sections {
-  const reader = readerFor(job, true);
-  const { facts } = reader;
-  const edges = cellEdges(facts);
-  const sampler = createLocalSampler(job, facts);
-  const { points } = facts;
-  const common = { job, facts, sampler };
-  const fine = createRefiner({ ...common, edges, points, splitAbove: job.splitAbove, axis: job.axis.nodes });
-  const sub = job.probing ? undefined : smallestSubMeshes(facts);
-  const coarse =
-    sub &&
-    createRefiner({
-      ...common,
-      edges: edges.map(([x, y, z]): Triple => [x * sub.stride, y * sub.stride, z * sub.stride]),
-      points: points / sub.count,
-      splitAbove: job.splitAbove * Math.sqrt(sub.count) * coarseLeniency,
-      axis: coarseNodes(job.axis),
-    });
+  const region = regionFor(job, tasks[0], true);
+  const local = { ...job, regularEv: job.regularEv * region.weight ** (1 / region.parent.periodic) };
+  const sampler = createLocalSampler(local, region.parent);
+  const fine = ownRefiner(job, region, sampler, 1);
+  const ofParent = region.facts.patch === undefined && !job.probing;
+  const replaced = ofParent && region.patchOf.size > 0 ? ownRefiner(job, region, sampler, replacedLeniency) : undefined;
+  const sub = ofParent ? smallestSubMeshes(region.parent) : undefined;
+  const coarse = sub && coarseRefiner(job, region, sampler, sub);
+  const finder = createLinkFinder(region);
+  const all = allLinks(region.parent.periodic);
   for (const task of tasks)
-    walkPoints(reader, task, job.plan.moments, (flat, point) => {
+    walkPoints(region.reader, task, job.plan.moments, (flat, point) => {
       sampler.load(point);
-      fine.refine();
-      if (sub !== undefined && subMeshOf(flat, facts, sub) === 0) coarse?.refine();
+      const { links, replaced: lost } = finder.find(flat);
+      if (region.counts(flat)) {
+        fine.refine(links);
+        replaced?.serve(lost);
+      } else {
+        fine.serve(links);
+        replaced?.refine(lost);
+      }
+      if (sub !== undefined && subMeshOf(flat, region.parent, sub) === 0) coarse?.refine(all);
     });
-  reader.close();
+  region.reader.close();
   const sections: Sections = {};
   fine.finish(sections, "refine");
+  replaced?.finish(sections, "replaced");
   coarse?.finish(sections, "coarse");
   return sections;
+}
+
+function ownRefiner(job: RefineJob, region: Region, sampler: LocalSampler, leniency: number): Refiner {
+  const { parent, edges, weight } = region;
+  return createRefiner({
+    job,
+    facts: parent,
+    sampler,
+    edges,
+    points: parent.points / weight,
+    weight,
+    splitAbove: job.splitAbove * leniency,
+    axis: job.axis.nodes,
+  });
+}
+
+function coarseRefiner(
+  job: RefineJob,
+  { parent, edges }: Region,
+  sampler: LocalSampler,
+  sub: { readonly stride: number; readonly count: number },
+): Refiner {
+  return createRefiner({
+    job,
+    facts: parent,
+    sampler,
+    edges: edges.map(([x, y, z]): Triple => [x * sub.stride, y * sub.stride, z * sub.stride]),
+    points: parent.points / sub.count,
+    weight: 1,
+    splitAbove: job.splitAbove * Math.sqrt(sub.count) * coarseLeniency,
+    axis: coarseNodes(job.axis),
+  });
 }

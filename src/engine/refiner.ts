@@ -9,6 +9,7 @@ import type { Sections } from "../spectrum/sections.js";
 import { type BoxSpectrum, createBoxSpectrum } from "./box-spectrum.js";
 import { columnCount } from "./columns.js";
 import type { RefineJob } from "./job.js";
+import type { Links } from "./links.js";
 import { type BandSample, type LocalSampler, newSample } from "./local-sampler.js";
 import { spanWidths } from "./pass.js";
 
@@ -23,8 +24,10 @@ export interface RefinerPlan {
   readonly facts: GridFacts;
   /** Edges of its cells, 1/angstrom. */
   readonly edges: readonly Triple[];
-  /** Number of its points. */
+  /** Number of cells of its size in the zone. */
   readonly points: number;
+  /** Volume of one of them, in cells of the stored (a patch's parent's) mesh. */
+  readonly weight: number;
   /** A family is halved further above this part of the tolerance. */
   readonly splitAbove: number;
   /** Where its main spectrum is kept. */
@@ -33,15 +36,17 @@ export interface RefinerPlan {
 }
 
 export interface Refiner {
-  /** Refines the cell of a point that the sampler has just loaded. */
-  refine(): void;
+  /** Refines the cell of a point that the sampler has just loaded; `links` say which neighbours correct it. */
+  refine(links: Links): void;
+  /** Only serves the neighbours of the point just loaded. */
+  serve(links: Links): void;
   /** Hands over spectra and counters under `name.`. */
   finish(into: Sections, name: string): void;
 }
 
 /** A refiner of one mesh. */
 export function createRefiner(plan: RefinerPlan): Refiner {
-  const { job, facts, edges, sampler } = plan;
+  const { job, facts, edges, sampler, weight } = plan;
   const columns = columnCount(job.plan);
   const main = createBoxSpectrum(plan.axis, columns, edges);
   const defect = createBoxSpectrum(plan.axis, columns, edges);
@@ -55,14 +60,24 @@ export function createRefiner(plan: RefinerPlan): Refiner {
     disagrees: judge.disagrees,
     accept: (family, resolved) => {
       judge.accept();
-      depositFamily(family, resolved, facts.periodic, main);
+      depositFamily(family, resolved, weight, main);
     },
   });
   const root = newSample(facts, columns);
   const other = newSample(facts, columns);
   const steps = neighbourSteps(facts.periodic);
+  // (1/24) sum over cells and neighbours of (stored truth - model's guess): what a point serves as truth is gathered where it stands.
+  const serve = (links: Links): void => {
+    if (links.truth === 0) return;
+    sampler.evaluateRegular(root, edges);
+    defect.add(root, 0, (weight * links.truth) / 24);
+  };
   return {
-    refine() {
+    serve(links) {
+      root.t.fill(0);
+      serve(links);
+    },
+    refine(links) {
       root.t.fill(0);
       sampler.evaluate(root, edges);
       const cost = tree(root, job.samplesPerCell);
@@ -70,14 +85,13 @@ export function createRefiner(plan: RefinerPlan): Refiner {
       tally[counters.unresolved] += cost.unresolved;
       if (cost.deepest > 1) tally[counters.splitCells]++;
       tally[counters.depths + Math.min(cost.deepest, depthsCounted - 1)]++;
-      // (1/24) sum over cells and neighbours of (stored truth - model's guess): each stored point is the neighbour of 2d cells.
-      sampler.evaluateRegular(root, edges);
-      defect.add(root, 0, steps.length / 24);
-      for (const t of steps) {
+      serve(links);
+      for (const [i, t] of steps.entries()) {
+        if (links.models[i] === 0) continue;
         other.t.set(t);
         other.centre.set(t);
         sampler.evaluateRegular(other, edges);
-        defect.add(other, 0, -1 / 24);
+        defect.add(other, 0, (-weight * links.models[i]) / 24);
       }
       tally[counters.defectSamples] += steps.length;
     },
@@ -90,20 +104,20 @@ export function createRefiner(plan: RefinerPlan): Refiner {
   };
 }
 
-/** The 2d neighbours along the edges. */
+/** The 2d neighbours along the edges, in the order of Links.models. */
 function neighbourSteps(dimension: number): Float64Array[] {
   return Array.from({ length: 2 * dimension }, (_, i) => {
     const t = new Float64Array(dimension);
-    t[i >> 1] = i % 2 === 0 ? 1 : -1;
+    t[i >> 1] = i % 2 === 0 ? -1 : 1;
     return t;
   });
 }
 
 /** A family that agrees is extrapolated; one that a limit ended counts as it is. */
-function depositFamily(family: Family<BandSample>, resolved: boolean, dimension: number, main: BoxSpectrum): void {
+function depositFamily(family: Family<BandSample>, resolved: boolean, weight: number, main: BoxSpectrum): void {
   const { parent, children, depth } = family;
   const size = 2 ** -depth;
-  const volume = size ** dimension;
+  const volume = weight * size ** parent.t.length;
   for (const child of children) {
     const share = resolved ? childWeight(parent, child, depth) : 1;
     main.add(child, size / 2, (volume / children.length) * share);

@@ -8,10 +8,34 @@ import { energyUnits, lengthUnits } from "./units.js";
 /** The facts that the manifest alone gives. */
 export type ManifestFacts = Omit<GridFacts, "directory" | "sha256" | "bytes">;
 
+/** Which mesh the manifest's points make, where it is not the one that it states: that of a patch. */
+export type OtherMesh = Pick<GridFacts, "divisions" | "offset" | "points" | "patch">;
+
 /** Checks the manifest as a whole and converts it; throws a data Fault starting with `where`. */
-export function factsOf(manifest: Manifest, where: string): ManifestFacts {
+export function factsOf(manifest: Manifest, where: string, mesh?: OtherMesh): ManifestFacts {
   const fail = (message: string, cure: string): Fault => dataFault(`${where}: ${message}`, cure);
   refuseUnread(manifest, fail);
+  const { divisions, offset, points, patch } = mesh ?? statedMesh(manifest, fail);
+  return {
+    title: manifest.title,
+    ...latticeOf(manifest, fail),
+    divisions,
+    offset,
+    points,
+    patch,
+    bands: manifest.bands,
+    electronsPerBand: manifest.electronsPerBand,
+    ...levelOf(manifest, fail),
+    moments: momentsOf(manifest, fail),
+    hessian: hessianOf(manifest),
+    tags: manifest.tags,
+  };
+}
+
+/** The full mesh that the manifest states. */
+function statedMesh(manifest: Manifest, fail: Fail): OtherMesh {
+  if (manifest.patch !== undefined)
+    throw fail("this is a patch: it replaces some cells of a parent's mesh", "Name the parent, which lists it.");
   if (manifest.mesh === undefined) throw fail("mesh is missing: it must be an object {...}", "Add mesh.");
   const { divisions, offset } = manifest.mesh;
   const points = divisions[0] * divisions[1] * divisions[2];
@@ -26,19 +50,13 @@ export function factsOf(manifest: Manifest, where: string): ManifestFacts {
       );
     }
   });
-  return {
-    title: manifest.title,
-    ...latticeOf(manifest, divisions, offset, fail),
-    divisions,
-    offset,
-    points,
-    bands: manifest.bands,
-    electronsPerBand: manifest.electronsPerBand,
-    ...levelOf(manifest, fail),
-    moments: momentsOf(manifest, fail),
-    hessian: hessianOf(manifest),
-    tags: manifest.tags,
-  };
+  if (manifest.lattice.periodic === 2 && (divisions[2] !== 1 || offset[2] !== 0)) {
+    throw fail(
+      `lattice.periodic is 2, but mesh.divisions[2] is ${divisions[2]} and mesh.offset[2] is ${offset[2]}: they must be 1 and 0`,
+      "A layer's k points lie in the plane of b1 and b2.",
+    );
+  }
+  return { divisions, offset, points };
 }
 
 type Fail = (message: string, cure: string) => Fault;
@@ -56,17 +74,9 @@ function refuseUnread(manifest: Manifest, fail: Fail): void {
       throw fail(`${name} belongs to a symmetry-reduced grid, which this version does not read yet`, cure);
     }
   }
-  if (manifest.patch !== undefined)
-    throw fail("this is a patch, which this version does not read yet", "Name its parent.");
-  if (manifest.patches !== undefined && manifest.patches.length > 0) {
-    throw fail(
-      "patches are given, which this version does not read yet",
-      "Remove patches to use the parent's mesh alone.",
-    );
-  }
 }
 
-function latticeOf(manifest: Manifest, divisions: Triple, offset: Triple, fail: Fail) {
+function latticeOf(manifest: Manifest, fail: Fail) {
   const factor = lengthUnits[manifest.lattice.unit];
   const [a1, a2, a3] = manifest.lattice.vectors.map((row) => row.map((x) => x * factor) as unknown as Triple);
   const lengths = [a1, a2, a3].map((row) => Math.hypot(...row));
@@ -76,12 +86,6 @@ function latticeOf(manifest: Manifest, divisions: Triple, offset: Triple, fail: 
   }
   const { periodic } = manifest.lattice;
   if (periodic === 2) {
-    if (divisions[2] !== 1 || offset[2] !== 0) {
-      throw fail(
-        `lattice.periodic is 2, but mesh.divisions[2] is ${divisions[2]} and mesh.offset[2] is ${offset[2]}: they must be 1 and 0`,
-        "A layer's k points lie in the plane of b1 and b2.",
-      );
-    }
     const tilt = Math.max(Math.abs(dot(a1, a3)) / lengths[0], Math.abs(dot(a2, a3)) / lengths[1]) / lengths[2];
     if (tilt > 1e-6) {
       throw fail(

@@ -33,6 +33,10 @@ export function fingerprint(manifest: Uint8Array, arrays: readonly ArrayPlan[]):
   return hash.digest("hex");
 }
 
+/** One SHA-256 (hex) for several. */
+export const combined = (digests: readonly string[]): string =>
+  createHash("sha256").update(digests.join()).digest("hex");
+
 /** SHA-256 (hex, lower case) of a whole file. Reads it in pieces of 4 MB. */
 export function fileDigest(array: string, file: Pick<FilePlan, "path" | "name">): string {
   const hash = createHash("sha256");

@@ -1,5 +1,4 @@
 // grid.ts: what the rest of the program knows of a band grid on disk: facts, what to read, and a block of k points.
-import type { PatchCells } from "./patches.js";
 
 export type Triple = readonly [number, number, number];
 
@@ -18,6 +17,16 @@ export interface MomentFacts {
   readonly underTimeReversal: "odd" | "even";
   /** "hbar": values are in hbar after conversion (half-hbar is halved on reading); "1": dimensionless. */
   readonly unit: "hbar" | "1";
+}
+
+/** Which cells of the parent's mesh a patch replaces, and how finely. */
+export interface PatchCells {
+  /** Name of the directory, as the parent gives it. */
+  readonly name: string;
+  /** Each cell is divided m1 x m2 x m3. */
+  readonly divisions: Triple;
+  /** Flat indices of the parent's mesh, in the order in which the patch stores them. */
+  readonly cells: Int32Array;
 }
 
 export type HessianKind = "none" | "free-electron" | "array";

@@ -3,17 +3,18 @@ import type { CurvesResult } from "../curves/result.js";
 import { cutTasks } from "../engine/job.js";
 import { planRefinement } from "../engine/refine-plan.js";
 import { type RunOptions, runTasks } from "../engine/run.js";
+import { openGrid } from "../grid/open.js";
 import { type Computed, planSweep, type SweepOptions, type SweepPlan, type SweptPart } from "./sweep-plan.js";
 import { assembleResult } from "./sweep-result.js";
 
 export { type SweepOptions, sweepOptions } from "./sweep-plan.js";
-
 export { intrinsicOnly } from "./sweep-result.js";
+
 /** Samples that may be spent where the user names no number. */
 const defaultSamples = (points: number): number => 200_000 + 100 * points;
 
 async function compute({ job, facts, options, regularEv }: SweepPlan, run: RunOptions): Promise<Computed> {
-  const tasks = cutTasks(facts.points);
+  const tasks = cutTasks(openGrid(job.directory, job.view));
   if (job.method !== "refine")
     return { sections: await runTasks({ kind: "mesh", job }, tasks, run), refined: undefined };
   const quiet = { workers: run.workers, signal: run.signal };

@@ -229,9 +229,9 @@ export const faultCases: FaultCase[] = [
   [
     "a patch",
     field("patch", { divisions: [2, 2, 2], cells: "cells.i32" }),
-    /patch, which this version does not read yet/,
+    /this is a patch: it replaces some cells of a parent's mesh/,
   ],
-  ["patches", field("patches", ["patch-01"]), /patches are given, which this version does not read yet/],
+  ["patches", field("patches", ["patch-01"]), /patches: "patch-01" cannot be read/],
   [
     "reduced points",
     field("points", 2),
