@@ -5,6 +5,7 @@ import { describe, expect, it } from "vitest";
 import {
   childWeight,
   createTree,
+  type Family,
   guessShare,
   parentWeight,
   type Sample,
@@ -31,6 +32,8 @@ interface Wish {
 
 interface Found {
   readonly integral: number;
+  /** Root of the sum of squares of what families that were let pass disagreed by: the bar that a refined sweep makes of it. */
+  readonly bar: number;
   readonly cost: TreeCost;
   readonly evaluated: number;
   readonly created: number;
@@ -38,9 +41,13 @@ interface Found {
 
 /** Integral over the cell as a refined sweep takes it: families that agree are extrapolated, others count as they are. */
 function integrate(field: Field, { dimension, depthLimit = 14, sampleLimit = 1e6, tolerance, suspects }: Wish): Found {
-  let [integral, evaluated, created] = [0, 0, 0];
+  let [integral, squares, evaluated, created] = [0, 0, 0, 0];
   const mean = (children: readonly Value[]): number =>
     children.reduce((sum, { value }) => sum + value, 0) / 2 ** dimension;
+  const disagreement = ({ parent, children, depth }: Family<Value>): number => {
+    const guess = children.reduce((sum, child) => sum + guessShare(parent, child, depth) * child.value, 0);
+    return (parent.value - guess / children.length) * 2 ** (-dimension * depth);
+  };
   const tree = createTree<Value>({
     dimension,
     depthLimit,
@@ -52,12 +59,11 @@ function integrate(field: Field, { dimension, depthLimit = 14, sampleLimit = 1e6
       evaluated++;
       sample.value = field(sample.t);
     },
-    disagrees: ({ parent, children, depth }) => {
-      if (suspects?.(parent.centre, 2 ** -depth)) return true;
-      const guess = children.reduce((sum, child) => sum + guessShare(parent, child, depth) * child.value, 0);
-      return Math.abs(parent.value - guess / children.length) * 2 ** (-dimension * depth) > tolerance;
-    },
-    accept: ({ parent, children, depth }, resolved) => {
+    disagrees: (family) =>
+      suspects?.(family.parent.centre, 2 ** -family.depth) || Math.abs(disagreement(family)) > tolerance,
+    accept: (family, resolved) => {
+      const { parent, children, depth } = family;
+      squares += disagreement(family) ** 2;
       const extrapolated =
         parentWeight(parent, depth) * parent.value +
         children.reduce((sum, child) => sum + childWeight(parent, child, depth) * child.value, 0) / children.length;
@@ -66,7 +72,7 @@ function integrate(field: Field, { dimension, depthLimit = 14, sampleLimit = 1e6
   });
   const t = new Float64Array(dimension);
   const cost = tree({ t, centre: new Float64Array(dimension), value: field(t) }, sampleLimit);
-  return { integral, cost, evaluated, created };
+  return { integral, bar: Math.sqrt(squares), cost, evaluated, created };
 }
 
 // Closed forms over [-1/2, 1/2]^d.
@@ -103,21 +109,58 @@ describe("integrals over one cell", () => {
       expect(evaluated).toBe(2 ** dimension);
     });
 
-    it(`${dimension}D, smooth: errs by less than the tolerance, and by 1/16 with every halving of the cells`, () => {
-      const errors = [2, 3, 4, 5].slice(0, 6 - dimension).map((depthLimit) => {
-        const full = integrate(smooth, { dimension, tolerance: 0, depthLimit });
-        expect(full.cost.deepest).toBe(depthLimit);
-        return full.integral;
-      });
+    it(`${dimension}D, smooth: sums over uniform boxes err by h^2, extrapolated by h^4: 1/16 with every halving`, () => {
       const exact = smoothIntegral(dimension);
-      // Every family ends at the limit, and none counts as resolved: sums of second order, to be extrapolated here to the fourth.
-      const left = errors.slice(1).map((error, i) => Math.abs((4 * error - errors[i]) / 3 - exact));
-      for (let i = 1; i < left.length; i++) expect(left[i - 1] / left[i]).toBeGreaterThan(10);
+      // Every family ends at the limit, and none counts as resolved: sums of second order, extrapolated here to the fourth.
+      const second = [2, 3, 4, 5, 6, 7].slice(0, dimension === 3 ? 5 : 6).map((depthLimit) => {
+        const full = integrate(smooth, { dimension, tolerance: 0, depthLimit, sampleLimit: 1e7 });
+        expect(full.cost.deepest).toBe(depthLimit);
+        return full.integral - exact;
+      });
+      const fourth = second.slice(1).map((error, i) => (4 * error - second[i]) / 3);
+      // The ratio's distance from the power of two is the next even order: it falls like h^2 itself, to 1/4 in the limit.
+      for (const [errors, power, nearest] of [
+        [second, 4, 5e-5],
+        [fourth, 16, dimension === 3 ? 1.5 : 0.03],
+      ] as const) {
+        const off = errors.slice(1).map((error, i) => Math.abs(errors[i] / error - power));
+        for (let i = 1; i < off.length; i++) expect(off[i - 1] / off[i]).toBeGreaterThan(2.9);
+        expect(off[off.length - 1]).toBeLessThan(nearest);
+      }
+    });
+
+    it(`${dimension}D, smooth: errs by less than half the root of the squares of what was let pass`, () => {
+      const exact = smoothIntegral(dimension);
       for (const tolerance of [1e-2, 1e-3, 1e-4, 1e-5]) {
-        const { integral, cost } = integrate(smooth, { dimension, tolerance });
-        // The tolerance is what one family may disagree by; each errs by a small part of its disagreement.
-        const families = Math.max(1, cost.samples / 4 ** dimension);
-        expect(Math.abs(integral - exact)).toBeLessThan(tolerance * families);
+        const { integral, bar } = integrate(smooth, { dimension, tolerance });
+        expect(Math.abs(integral - exact)).toBeLessThan(bar / 2);
+        // In 3D off-middle parents leave a part of one sign (below), which adds up over the families instead of averaging out.
+        if (dimension === 2) expect(Math.abs(integral - exact)).toBeLessThan(tolerance / 10);
+      }
+    });
+
+    it(`${dimension}D: off the middle a family is exact for cubics but for the traceless part of quadratics: w o.A o`, () => {
+      const random = createRandom(31 + dimension);
+      for (let trial = 0; trial < 50; trial++) {
+        const offset = Array.from({ length: dimension }, () => 0.15 * random());
+        const a = Array.from({ length: dimension }, () => Array.from({ length: dimension }, random));
+        const linear = Array.from({ length: dimension }, random);
+        const square = (t: ArrayLike<number>): number =>
+          a.reduce((sum, row, i) => sum + row.reduce((part, x, j) => part + x * t[i] * t[j], 0), 0);
+        const field: Field = (t) => 2 + linear.reduce((sum, x, j) => sum + x * t[j], 0) + square(t);
+        const sampleAt = (t: readonly number[]): Sample => ({
+          t: Float64Array.from(t),
+          centre: new Float64Array(dimension),
+        });
+        const parent = sampleAt(offset);
+        const w = parentWeight(parent, 0);
+        const found = samplePattern(dimension).reduce((sum, place) => {
+          const child = sampleAt(place);
+          return sum + (childWeight(parent, child, 0) * field(child.t)) / 2 ** dimension;
+        }, w * field(parent.t));
+        const trace = a.reduce((sum, row, i) => sum + row[i], 0);
+        const traceless = square(offset) - (trace * offset.reduce((sum, x) => sum + x * x, 0)) / dimension;
+        expect(found).toBeCloseTo(2 + trace / 12 + w * traceless, 14);
       }
     });
   }
@@ -129,7 +172,8 @@ describe("integrals over one cell", () => {
       const suspects = (centre: Float64Array, size: number): boolean =>
         size > height && centre.every((x, j) => Math.abs(x - at[j]) < size / 2);
       const found = integrate(monopole(height, at), { dimension: 2, tolerance: 2e-4, depthLimit: 30, suspects });
-      expect(Math.abs(found.integral / solidAngle(height, at) - 1)).toBeLessThan(2e-3);
+      expect(Math.abs(found.integral - solidAngle(height, at))).toBeLessThan(found.bar);
+      expect(Math.abs(found.integral / solidAngle(height, at) - 1)).toBeLessThan(2e-4);
       expect(found.cost.unresolved).toBe(0);
       expect(found.cost.samples).toBe(found.evaluated);
       return found.cost.samples;
@@ -139,12 +183,13 @@ describe("integrals over one cell", () => {
     expect(samples[3]).toBeLessThan(5000);
   });
 
-  it("3D: a peak a hundredth of the cell wide to 1e-3, at a hundredth of the uniform mesh's samples", () => {
+  it("3D: a peak a hundredth of the cell wide to 5e-4, at a hundredth of the uniform mesh's samples", () => {
     const exact = lorentzIntegral(0.01, 3);
     const suspects = (centre: Float64Array, size: number): boolean =>
       size > 0.02 && centre.every((x) => Math.abs(x) <= size / 2);
     const { integral, cost } = integrate(lorentzians(0.01), { dimension: 3, tolerance: 1e-6 * exact, suspects });
-    expect(Math.abs(integral / exact - 1)).toBeLessThan(1e-3);
+    // Families around so symmetric a peak err alike: 4.6 times the root of their squares.
+    expect(Math.abs(integral / exact - 1)).toBeLessThan(5e-4);
     expect(cost.samples).toBeLessThan(8 ** cost.deepest / 100);
   });
 });
