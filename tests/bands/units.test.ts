@@ -1,6 +1,6 @@
 // units.test.ts: are prefactors and signs those of the Kubo formula, worked out here from e, hbar and metres alone?
 import { describe, expect, it } from "vitest";
-import { type ResponseUnit, responseUnit } from "../../src/bands/units.js";
+import { drudeUnit, type ResponseUnit, responseUnit, thermalUnit } from "../../src/bands/units.js";
 import { isFault } from "../../src/base/errors.js";
 import type { GridFacts, MomentFacts } from "../../src/grid/grid.js";
 
@@ -140,5 +140,37 @@ describe("a unit that fits nothing", () => {
     for (const wanted of ["banana S/cm", "kS/m", "hbar/3e S/cm", "mS/cm"])
       for (const carrier of ["charge", "valley", "spin"])
         expect(faultOf(carrier, crystal, wanted).message).toContain(wanted);
+  });
+});
+
+describe("companions", () => {
+  it("Mott integrals keep the response's unit of flux: A/(m K), (hbar/e) A/(m K), for a layer A/K; -k_B/e is in the factor", () => {
+    const of = (carrier: string, facts: typeof crystal, unit?: string) => {
+      const [thermal, response] = [thermalUnit(carrier, facts, unit), responseUnit(carrier, facts, unit)];
+      return [thermal.unit, thermal.factor / response.factor / -8.617333262e-5] as const;
+    };
+    expect(of("charge", crystal)).toEqual(["A/(m K)", expect.closeTo(100, 10)]);
+    expect(of("charge", crystal, "S/m")).toEqual(["A/(m K)", expect.closeTo(1, 12)]);
+    expect(of("spin", crystal)).toEqual(["(hbar/e) A/(m K)", expect.closeTo(100, 10)]);
+    expect(of("spin", crystal, "(hbar/2e) S/m")).toEqual(["(hbar/2e) A/(m K)", expect.closeTo(1, 12)]);
+
+    expect(of("charge", layer)).toEqual(["A/K", expect.closeTo(chargeC ** 2 / planckJs, 14)]);
+    expect(of("spin", layer)).toEqual(["(hbar/e) A/K", expect.closeTo(chargeC ** 2 / planckJs, 14)]);
+    expect(of("spin", layer, "(hbar/e) S/cm")).toEqual(["(hbar/e) A/(m K)", expect.closeTo(100, 10)]);
+  });
+
+  it("the Drude weight of free electrons is n e^2 / m", () => {
+    // A parabola filled to E_F: the mean of v_x^2 delta(E - E_F) over a cell's zone is n V times hbar^2 / m, n the electrons per volume.
+    const massKg = 9.1093837139e-31; // CODATA 2022
+    const perCell = 1.3;
+    const volumeM3 = fccVolumeA3 * 1e-30;
+    const mean = perCell * 7.6199642318; // hbar^2 / m_e in eV angstrom^2
+    const { unit, factor } = drudeUnit(crystal);
+    expect(unit).toBe("(S/m)/s");
+    expect((factor * mean) / ((perCell / volumeM3) * (chargeC ** 2 / massKg))).toBeCloseTo(1, 8);
+    const areaM2 = hexagonalAreaA2 * 1e-20;
+    expect(drudeUnit(layer).unit).toBe("S/s");
+    expect((drudeUnit(layer).factor * mean) / ((perCell / areaM2) * (chargeC ** 2 / massKg))).toBeCloseTo(1, 8);
+    expect(drudeUnit({ ...crystal, electronsPerBand: 2 }).factor).toBe(2 * factor);
   });
 });

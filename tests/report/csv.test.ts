@@ -29,6 +29,23 @@ describe("curvesCsv", () => {
     expect(curvesColumns({ ...result, doping_density_unit: "per_cm2" })[5]).toBe("doping_per_cm2");
   });
 
+  it("has the Mott integrals after the responses, and last the Drude weight, where the result holds them", () => {
+    const [spin, charge] = result.responses;
+    const table = (value: number) => result.temperature_K.map(() => result.level_eV.map(() => value));
+    const full = {
+      ...result,
+      responses: [spin, { ...charge, thermal: { unit: "A/(m K)", value: table(3), error: table(4) } }],
+      drude: [{ name: "drude:xx", unit: "(S/m)/s", value: table(5), error: table(6) }],
+    };
+    expect(curvesColumns(full).slice(11)).toEqual([
+      "charge:xy thermal [A/(m K)]",
+      "charge:xy thermal error",
+      "drude:xx [(S/m)/s]",
+      "drude:xx error",
+    ]);
+    expect(curvesCsv(full).split("\n")[30].split(",").slice(11)).toEqual(["3", "4", "5", "6"]);
+  });
+
   it("has one row per temperature and level, temperature outermost, and reads back to the same doubles", () => {
     expect(rows).toHaveLength(1 + 2 * 41 + 1);
     for (const [t, e] of [
