@@ -26,19 +26,40 @@ const typedSweepOptions = {
 
 const typedRunOptions = z.object({ job: z.string().optional(), workers: typedWhole(1).optional() });
 
+const methodWords = {
+  refine: "refine: local models inside adaptively split cells (default)",
+  cells: "cells: bands linear inside each cell",
+  points: "points: the plain mesh sum",
+} as const;
+
+/** What help says of the defaults and methods of a study; a sweep's own where nothing is given. */
+interface StudyWords {
+  readonly points: string;
+  readonly temperature: string;
+  readonly accuracy: string;
+  readonly methods: readonly (keyof typeof methodWords)[];
+}
+
+const sweepWords: StudyWords = {
+  points: "201",
+  temperature: "0 300",
+  accuracy: "1%",
+  methods: ["refine", "cells", "points"],
+};
+
 /** Adds the options of a sweep, --job and --workers to a command. */
-export function addSweepOptions(command: Command): Command {
+export function addSweepOptions(command: Command, words: StudyWords = sweepWords): Command {
   return command
     .option("--response <NAME...>", "what to compute (default charge:xy and the Hall response of every moment)")
     .option("--from <EV>", "lowest level, relative to the reference level (default -1)")
     .option("--to <EV>", "highest level (default 1)")
-    .option("--points <N>", "number of levels (default 201)")
-    .option("--temperature <K...>", "temperatures in kelvin (default 0 300)")
+    .option("--points <N>", `number of levels (default ${words.points})`)
+    .option("--temperature <K...>", `temperatures in kelvin (default ${words.temperature})`)
+    .option("--method <NAME>", words.methods.map((method) => methodWords[method]).join("; "))
     .option(
-      "--method <NAME>",
-      "refine: local models inside adaptively split cells (default); cells: bands linear inside each cell; points: the plain mesh sum",
+      "--accuracy <SHARE>",
+      `what refine aims at, in parts of each response's largest value (default ${words.accuracy})`,
     )
-    .option("--accuracy <SHARE>", "what refine aims at, in parts of each response's largest value (default 1%)")
     .option("--samples <N>", "about how many samples refine may spend (default 1,000,000 and 30 per stored point)")
     .option("--degenerate <EV>", "pairs of bands closer than this are taken as degenerate (default 1e-5)")
     .option("--broaden <EV>", "eta in 1/((E_n - E_m)^2 + eta^2) (default 0)")
@@ -46,6 +67,7 @@ export function addSweepOptions(command: Command): Command {
       "--unit <UNIT>",
       'unit of the responses, e.g. "(hbar/2e) S/cm", "S/m"; the default is stated in every result',
     )
+    .option("--thermal", "the Mott integral of every response too: the current that a temperature gradient drives")
     .option("--job <FILE>", "options from a JSON file or from an earlier curves.json; options typed here win")
     .option("--workers <N>", "worker threads (default one per core); the numbers do not depend on it");
 }
@@ -67,7 +89,6 @@ interface TypedStudy<T> {
 export function studyOptions<T>(command: Command, { study, schema, own }: TypedStudy<T>): T {
   const typed = validated(z.object({ ...typedSweepOptions, ...own }), command.opts(), study);
   const given = Object.fromEntries(Object.entries(typed).filter(([, value]) => value !== undefined));
-    .option("--thermal", "the Mott integral of every response too: the current that a temperature gradient drives")
   const { job } = validated(typedRunOptions, command.opts(), study);
   return validated(schema, { ...(job === undefined ? {} : readJob(job, study)), ...given }, study);
 }
