@@ -137,17 +137,27 @@ export function peaksOf(
     .sort((a, b) => Number(b.resolved) - Number(a.resolved) || Math.abs(b.value) - Math.abs(a.value));
 }
 
+/** Round concentrations inside a range of electrons per cell, for where carriers are few. */
+export function roundDopings(
+  densityOfOne: number,
+  unit: "per_cm3" | "per_cm2",
+  [least, most]: readonly [number, number],
+): number[] {
+  const round = roundDensities[unit].map((density) => density / densityOfOne);
+  return [...round.map((each) => -each).reverse(), ...round].filter((each) => each >= least && each <= most);
+}
+
 /** The dopings asked for, in electrons per cell; none asked for and carriers few: round concentrations inside the window. */
 export function askedDopings(
   { curves, scale, few }: Doped,
   { doping, dopingUnit }: { doping?: readonly number[] | undefined; dopingUnit: DopingUnit },
   [least, most]: readonly [number, number],
+  where = "",
 ): number[] {
   const inCell = (value: number): number => (dopingUnit === "per_cell" ? value : value / scale.densityOfOne);
   if (doping === undefined) {
     if (!few) return [];
-    const round = roundDensities[curves.doping_density_unit].map((density) => density / scale.densityOfOne);
-    return [...round.map((each) => -each).reverse(), ...round].filter((each) => each >= least && each <= most);
+    return roundDopings(scale.densityOfOne, curves.doping_density_unit, [least, most]);
   }
   checkDopingUnit(dopingUnit, curves.doping_density_unit === "per_cm3" ? 3 : 2);
   for (const value of doping) {
@@ -156,7 +166,7 @@ export function askedDopings(
       Number((dopingUnit === "per_cell" ? perCell : perCell * scale.densityOfOne).toPrecision(3)).toString();
     const [from, to] = [curves.level_eV[0], curves.level_eV[curves.level_eV.length - 1]];
     throw usageFault(
-      `--doping ${value} ${dopingUnit}: the window from ${from} to ${to} eV holds only ${told(least)} to ${told(most)} at every temperature`,
+      `${where}--doping ${value} ${dopingUnit}: the window from ${from} to ${to} eV holds only ${told(least)} to ${told(most)} at every temperature`,
       `Widen it with ${inCell(value) < least ? `--from below ${from}` : `--to above ${to}`}, or ask for a smaller doping.`,
     );
   }

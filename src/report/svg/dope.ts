@@ -48,11 +48,13 @@ function decadeAxis(result: DopeResult): DopingAxis {
   const decades = (perCell: number): number =>
     Math.max(0, Math.log10(Math.abs(perCell) * result.density_of_one) - floor);
   const placeOf = (perCell: number): number => (perCell === 0 ? 0 : Math.sign(perCell) * decades(perCell));
-  const [left, right] = [least < 0 ? -decades(least) : 0, most > 0 ? decades(most) : 0];
+  const [left, right] = [placeOf(least), placeOf(most)];
   const inCell = (place: number): number =>
     place === 0 ? 0 : (Math.sign(place) * 10 ** (Math.abs(place) + floor)) / result.density_of_one;
   const x = Array.from({ length: drawnDopings }, (_, i) => left + (i * (right - left)) / (drawnDopings - 1));
-  const perCell = x.map((place) => Math.min(most, Math.max(least, inCell(place))));
+  const perCell = x.map(inCell);
+  perCell[0] = least;
+  perCell[perCell.length - 1] = most;
   const whole = Array.from({ length: Math.floor(right) - Math.ceil(left) + 1 }, (_, i) => Math.ceil(left) + i);
   const ticks = whole.map((at) => ({ at, label: `10${superscript(floor + Math.abs(at))}` }));
   const per = densityWords(result.density_unit).replace(/\^(\d)/, (_, d) => superscript(Number(d)));
