@@ -35,6 +35,8 @@ export interface RefinedFacts extends SpectraFacts {
   readonly regularEv: number;
   readonly hessian: HessianKind;
   readonly bands: number;
+  /** Where patches stand in for some cells: the part of the models' error that is left, out[column] at an absolute level. */
+  readonly modelShare?: (levelEv: number, out: Float64Array) => void;
 }
 
 /** Standard error bars by cause, zone means: [temperature][level][column]. */
@@ -156,7 +158,9 @@ function modelSquares(sections: Sections, facts: RefinedFacts, reading: Reading)
       for (let c = 0; c < columns; c++) out[c] = ((remainingDefect * wrong[c]) / points) ** 2;
     };
   const detail = facts.regularEv * defectDetail;
-  const fine = refinedSampler(sections, "refine", how, detail);
+  const { modelShare } = facts;
+  const fine = refinedSampler(sections, modelShare === undefined ? "refine" : "parent", how, detail);
+  const share = new Float64Array(columns).fill(1);
   const coarse = refinedSampler(sections, "coarse", { ...how, axis: coarseNodes(axis) }, detail * subMeshes.stride);
   const ofFine = new Float64Array(columns);
   const ofCoarse = new Float64Array(columns);
@@ -165,9 +169,10 @@ function modelSquares(sections: Sections, facts: RefinedFacts, reading: Reading)
     fine(levelEv, temperatureK, ofFine);
     coarse(levelEv, temperatureK, ofCoarse);
     defect(levelEv, temperatureK, wrong);
+    modelShare?.(levelEv, share);
     for (let c = 0; c < columns; c++) {
       const difference = ofFine[c] / points - (ofCoarse[c] * subMeshes.count) / points;
-      out[c] = (scale * difference) ** 2 + ((leastDefect * wrong[c]) / points) ** 2;
+      out[c] = (scale * share[c] * difference) ** 2 + ((leastDefect * wrong[c]) / points) ** 2;
     }
   };
 }

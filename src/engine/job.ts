@@ -32,6 +32,15 @@ export interface RefineJob extends SweepJob {
   readonly probing?: true;
 }
 
+/** What the pass over the neighbour defects of single cells needs besides a sweep's job. */
+export interface DefectJob extends SweepJob {
+  readonly regularEv: number;
+  /** Absolute. */
+  readonly levelsEv: readonly number[];
+  /** k_B T of the occupations. */
+  readonly thermalEv: number;
+}
+
 /** A run of stored k points: the unit of work, cut by the grid alone. */
 export interface Task {
   readonly first: number;

@@ -1,6 +1,6 @@
 // links.ts: which neighbours correct the local model of a stored point, where meshes of different density meet?
 import { pointsPerCell } from "../grid/patches.js";
-import { meshIndices } from "../zone/mesh.js";
+import { meshIndices, neighbourIndex } from "../zone/mesh.js";
 import type { Region } from "./regions.js";
 
 /**
@@ -32,14 +32,6 @@ export function createLinkFinder(region: Region): LinkFinder {
   return region.facts.patch === undefined ? parentLinks(region) : patchLinks(region);
 }
 
-/** Steps a flat index of the parent's mesh by one cell along edge j, around the zone. */
-function neighbourCell({ parent }: Region, flat: number, j: number, step: number): number {
-  const { divisions } = parent;
-  const index = [...meshIndices(flat, divisions)];
-  index[j] = (index[j] + step + divisions[j]) % divisions[j];
-  return (index[0] * divisions[1] + index[1]) * divisions[2] + index[2];
-}
-
 /** A point of the parent serves its neighbours although a patch replaces its own cell; a replaced cell needs no correction. */
 function parentLinks(region: Region): LinkFinder {
   const { periodic } = region.parent;
@@ -50,7 +42,8 @@ function parentLinks(region: Region): LinkFinder {
       let kept = 2 * periodic;
       if (region.patchOf.size > 0)
         for (let j = 0; j < periodic; j++)
-          for (const step of [-1, 1]) if (region.patchOf.has(neighbourCell(region, flat, j, step))) kept--;
+          for (const step of [-1, 1])
+            if (region.patchOf.has(neighbourIndex(flat, region.parent.divisions, j, step))) kept--;
       const own = region.counts(flat) ? 1 : 0;
       links.models.fill(own);
       links.truth = kept;
@@ -79,7 +72,7 @@ function patchLinks(region: Region): LinkFinder {
     const cells = Math.floor((s + step) / m);
     let at = cell;
     for (let i = 0; i < Math.abs(cells); i++) {
-      at = neighbourCell(region, at, j, Math.sign(cells));
+      at = neighbourIndex(at, region.parent.divisions, j, Math.sign(cells));
       if (!same(at)) return false;
     }
     return true;

@@ -5,7 +5,7 @@ import { createLocalModel } from "../kernel/local.js";
 import { averageOverSets } from "../kernel/sets.js";
 import type { Sample } from "../refine/tree.js";
 import { columnCount, fillColumns, mixColumns } from "./columns.js";
-import type { RefineJob } from "./job.js";
+import type { RefineJob, SweepJob } from "./job.js";
 
 /** What the local model says at one place: energies and slopes of every band, and its columns. */
 export interface BandSample extends Sample {
@@ -34,7 +34,7 @@ export interface LocalSampler {
 }
 
 /** A sampler for one grid and job; allocates nothing per sample. */
-export function createLocalSampler(job: RefineJob, facts: GridFacts): LocalSampler {
+export function createLocalSampler(job: SweepJob & Pick<RefineJob, "regularEv">, facts: GridFacts): LocalSampler {
   const { bands } = facts;
   const mixed = mixColumns(job.plan);
   const { products } = mixed;

@@ -17,7 +17,7 @@ const coarseLeniency = 4;
 const replacedLeniency = 4;
 
 /**
- * Spectra and counters of some runs of points of one region, under `refine.`; where the parent's mesh contains a sub-mesh also that
+ * Spectra and counters of some runs of points of one region, under `refine.` (of a patch `patch.`); where the parent's mesh contains a sub-mesh also that
  * mesh's, under `coarse.`; and where patches replace cells, what the parent's own models give for those, under `replaced.`.
  */
 export function refinePass(job: RefineJob, tasks: readonly Task[]): Sections {
@@ -46,7 +46,7 @@ export function refinePass(job: RefineJob, tasks: readonly Task[]): Sections {
     });
   region.reader.close();
   const sections: Sections = {};
-  fine.finish(sections, "refine");
+  fine.finish(sections, region.facts.patch === undefined ? "refine" : "patch");
   replaced?.finish(sections, "replaced");
   coarse?.finish(sections, "coarse");
   return sections;

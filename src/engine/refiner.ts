@@ -105,7 +105,7 @@ export function createRefiner(plan: RefinerPlan): Refiner {
 }
 
 /** The 2d neighbours along the edges, in the order of Links.models. */
-function neighbourSteps(dimension: number): Float64Array[] {
+export function neighbourSteps(dimension: number): Float64Array[] {
   return Array.from({ length: 2 * dimension }, (_, i) => {
     const t = new Float64Array(dimension);
     t[i >> 1] = i % 2 === 0 ? -1 : 1;

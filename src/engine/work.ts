@@ -1,16 +1,18 @@
 // work.ts: what a worker does: one task of one kind of work. Also called in place when there is only one worker.
 import { Fault, type FaultKind, isFault } from "../base/errors.js";
 import type { Sections } from "../spectrum/sections.js";
-import type { RefineJob, SweepJob, Task } from "./job.js";
+import { defectPass } from "./defect-pass.js";
+import type { DefectJob, RefineJob, SweepJob, Task } from "./job.js";
 import { meshPass } from "./pass.js";
 import { refinePass } from "./refine-pass.js";
 import { surveyPass } from "./survey-pass.js";
 
-/** Kinds of work a worker knows: the methods `points` and `cells`, and the two passes of `refine`. */
+/** Kinds of work a worker knows: the methods `points` and `cells`, the two passes of `refine`, and what its models get wrong. */
 export type Work =
   | { readonly kind: "mesh"; readonly job: SweepJob }
   | { readonly kind: "survey"; readonly job: SweepJob; readonly regularEv: number }
-  | { readonly kind: "refine"; readonly job: RefineJob };
+  | { readonly kind: "refine"; readonly job: RefineJob }
+  | { readonly kind: "defects"; readonly job: DefectJob };
 
 export interface Order {
   readonly work: Work;
@@ -26,6 +28,8 @@ export function performTask({ work, task }: Order): Sections {
       return surveyPass(work.job, work.regularEv, task);
     case "refine":
       return refinePass(work.job, [task]);
+    case "defects":
+      return defectPass(work.job, task);
   }
 }
 

@@ -27,9 +27,9 @@ export function spectraFacts({ job, facts }: SweepPlan): SpectraFacts {
   };
 }
 
-const refinedFacts = (planned: SweepPlan): RefinedFacts => {
+const refinedFacts = (planned: SweepPlan, { modelShare }: Computed): RefinedFacts => {
   const { hessian, bands } = planned.facts;
-  return { ...spectraFacts(planned), regularEv: planned.regularEv, hessian, bands };
+  return { ...spectraFacts(planned), regularEv: planned.regularEv, hessian, bands, modelShare };
 };
 
 /** Curves of one kind: [temperature][level][column]. */
@@ -48,10 +48,11 @@ export interface SweptCurves {
 }
 
 /** Curves of a computed sweep. */
-export function curvesOf(planned: SweepPlan, { sections, refined }: Computed): SweptCurves {
+export function curvesOf(planned: SweepPlan, computed: Computed): SweptCurves {
+  const { sections, refined } = computed;
   const { method } = planned.job;
   const known = spectraFacts(planned);
-  const local = refined === undefined ? undefined : refinedFacts(planned);
+  const local = refined === undefined ? undefined : refinedFacts(planned, computed);
   const occupied = local ? refinedCurves(sections, local) : occupiedCurves(sections, method, known);
   const withErrors = (values: ColumnCurves, reading: Reading): ReadCurves => {
     if (local) return { values, ...refinedErrors(sections, local, occupied, reading) };

@@ -5,6 +5,7 @@ import { type ResponseUnit, responseUnit } from "../bands/units.js";
 import { usageFault } from "../base/errors.js";
 import type { RefineJob, SweepJob } from "../engine/job.js";
 import { resolvedEnergy } from "../engine/mesh-step.js";
+import type { ModelShare } from "../engine/patched.js";
 import type { GridFacts, View } from "../grid/grid.js";
 import { openGrid } from "../grid/open.js";
 import { storedFacts } from "../grid/view.js";
@@ -89,4 +90,6 @@ export const unitOf = (carrier: string, facts: GridFacts, options: Pick<SweepOpt
 export interface Computed {
   readonly sections: Sections;
   readonly refined: RefineJob | undefined;
+  /** Where patches stand in for some cells. */
+  readonly modelShare?: ModelShare;
 }

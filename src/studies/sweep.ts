@@ -1,9 +1,12 @@
 // sweep.ts: how do the responses run with level and temperature, and how sure is that?
+
+import { modelOrderOf } from "../curves/refined.js";
 import type { CurvesResult } from "../curves/result.js";
-import { cutTasks } from "../engine/job.js";
+import { cutTasks, type RefineJob, type Task } from "../engine/job.js";
+import { joinPatches, type ModelShare, modelShare, parentTasks, planDefects } from "../engine/patched.js";
 import { planRefinement } from "../engine/refine-plan.js";
 import { type RunOptions, runTasks } from "../engine/run.js";
-import { openGrid } from "../grid/open.js";
+import { type Grid, openGrid } from "../grid/open.js";
 import { type Computed, planSweep, type SweepOptions, type SweepPlan, type SweptPart } from "./sweep-plan.js";
 import { assembleResult } from "./sweep-result.js";
 
@@ -14,15 +17,31 @@ export { intrinsicOnly } from "./sweep-result.js";
 const defaultSamples = (points: number): number => 200_000 + 100 * points;
 
 async function compute({ job, facts, options, regularEv }: SweepPlan, run: RunOptions): Promise<Computed> {
-  const tasks = cutTasks(openGrid(job.directory, job.view));
+  const grid = openGrid(job.directory, job.view);
+  const tasks = cutTasks(grid);
   if (job.method !== "refine")
     return { sections: await runTasks({ kind: "mesh", job }, tasks, run), refined: undefined };
   const quiet = { workers: run.workers, signal: run.signal };
   const survey = await runTasks({ kind: "survey", job, regularEv }, tasks, quiet);
   const wish = { accuracy: options.accuracy, samples: options.samples ?? defaultSamples(facts.points) };
   const refined = planRefinement(job, facts, regularEv, survey, wish);
-  const main = await runTasks({ kind: "refine", job: refined }, tasks, run);
-  return { sections: { ...survey, ...main }, refined };
+  const main = joinPatches(await runTasks({ kind: "refine", job: refined }, tasks, run));
+  const sections = { ...survey, ...main };
+  return { sections, refined, modelShare: await shareLeft(grid, refined, tasks, quiet) };
+}
+
+/** Where patches stand in for cells: how much of the models' error they leave. */
+async function shareLeft(
+  grid: Grid,
+  refined: RefineJob,
+  tasks: readonly Task[],
+  run: RunOptions,
+): Promise<ModelShare | undefined> {
+  if (grid.patches.length === 0) return undefined;
+  const job = planDefects(refined, grid.facts.points);
+  const own = parentTasks(tasks);
+  const sections = await runTasks({ kind: "defects", job }, own, run);
+  return modelShare(grid, job, own, sections, modelOrderOf(grid.facts.hessian));
 }
 
 /** Computes a sweep. The result does not depend on the number of workers. */

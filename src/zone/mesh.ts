@@ -11,6 +11,14 @@ export function meshIndices(flat: number, divisions: Triple): Triple {
   return [Math.floor(rest / divisions[1]), rest % divisions[1], i3];
 }
 
+/** Flat index of the mesh point `step` steps along edge j, around the zone. */
+export function neighbourIndex(flat: number, divisions: Triple, j: number, step: number): number {
+  const index = [...meshIndices(flat, divisions)];
+  const n = divisions[j];
+  index[j] = (((index[j] + step) % n) + n) % n;
+  return (index[0] * divisions[1] + index[1]) * divisions[2] + index[2];
+}
+
 /** Fractional coordinates of a mesh point in b1, b2, b3. */
 export function fractionalK(flat: number, mesh: MeshFacts): Triple {
   const index = meshIndices(flat, mesh.divisions);
