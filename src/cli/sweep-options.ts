@@ -34,6 +34,8 @@ const methodWords = {
 
 /** What help says of the defaults and methods of a study; a sweep's own where nothing is given. */
 interface StudyWords {
+  readonly from: string;
+  readonly to: string;
   readonly points: string;
   readonly temperature: string;
   readonly accuracy: string;
@@ -41,6 +43,8 @@ interface StudyWords {
 }
 
 const sweepWords: StudyWords = {
+  from: "-1",
+  to: "1",
   points: "201",
   temperature: "0 300",
   accuracy: "1%",
@@ -48,11 +52,12 @@ const sweepWords: StudyWords = {
 };
 
 /** Adds the options of a sweep, --job and --workers to a command. */
-export function addSweepOptions(command: Command, words: StudyWords = sweepWords): Command {
+export function addSweepOptions(command: Command, study: Partial<StudyWords> = {}): Command {
+  const words = { ...sweepWords, ...study };
   return command
     .option("--response <NAME...>", "what to compute (default charge:xy and the Hall response of every moment)")
-    .option("--from <EV>", "lowest level, relative to the reference level (default -1)")
-    .option("--to <EV>", "highest level (default 1)")
+    .option("--from <EV>", `lowest level, relative to the reference level (default ${words.from})`)
+    .option("--to <EV>", `highest level (default ${words.to})`)
     .option("--points <N>", `number of levels (default ${words.points})`)
     .option("--temperature <K...>", `temperatures in kelvin (default ${words.temperature})`)
     .option("--method <NAME>", words.methods.map((method) => methodWords[method]).join("; "))
