@@ -14,8 +14,9 @@ import { type DopeOptions, dope, dopeOptions, readDope } from "../../studies/dop
 import type { DopeResult } from "../../studies/dope-result.js";
 import type { Context, GlobalOptions } from "../context.js";
 import { checkedOut, deliverFiles, type ResultFile } from "../delivery.js";
-import { addSweepOptions, studyOptions, withRun } from "../sweep-options.js";
-import { typedNumber, typedShare } from "../validated.js";
+import { addDopingOptions, typedDopings } from "../doping-options.js";
+import { studyOptions, withRun } from "../sweep-options.js";
+import { typedNumber } from "../validated.js";
 
 const examples = `
 Examples:
@@ -32,24 +33,11 @@ Positive doping is added electrons. Dopings are counted from the reference level
 Whether a dopant may be used is another question: some are toxic or otherwise hazardous, and local rules and licensed practice apply.`;
 
 /** How the study's own options are typed. */
-export const typedDoping = {
-  doping: z.array(typedNumber()).optional(),
-  dopingUnit: z.string().optional(),
+const typedDope = {
+  ...typedDopings,
   substitute: z.array(typedNumber("expected a valence difference such as +1 or -2")).optional(),
   sites: typedNumber().optional(),
-  prominence: typedShare.optional(),
 };
-
-/** Adds the options that `dope` and `series` share beside those of a sweep. */
-export function addDopingOptions(command: Command): Command {
-  return addSweepOptions(command)
-    .option("--doping <N...>", "dopings at which to tell the responses; positive: added electrons")
-    .option("--doping-unit <UNIT>", "of --doping: per_cell (default), per_cm3 for a crystal, per_cm2 for a layer")
-    .option(
-      "--prominence <SHARE>",
-      "leave out peaks that stand out by less, in parts of the largest value (default 2%)",
-    );
-}
 
 /** Adds the command to the program. */
 export function register(program: Command, context: Context): void {
@@ -65,7 +53,7 @@ export function register(program: Command, context: Context): void {
   command.action(async (name: string) => {
     const globals = command.optsWithGlobals<GlobalOptions>();
     const fromFile = statSync(name, { throwIfNoEntry: false })?.isFile() === true;
-    const options = studyOptions(command, { study: "dope", schema: dopeOptions, own: typedDoping });
+    const options = studyOptions(command, { study: "dope", schema: dopeOptions, own: typedDope });
     checkedOut(globals);
     if (fromFile) {
       const curves = parseCurves(readFileSync(name, "utf8"), name);

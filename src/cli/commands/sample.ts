@@ -22,7 +22,9 @@ Examples:
   tidegauge sample metal --mesh 16 16 16 --out gold
       gold from two-centre parameters, 18 bands, 4096 k points
   tidegauge sample haldane --mesh 24 24 --offset 0.5 0.5 --out haldane-24
-      a mesh of one's own, moved by half a step off the zone's centre`;
+      a mesh of one's own, moved by half a step off the zone's centre
+  for e in -0.01 0 0.01; do tidegauge sample demo --mesh 8 8 8 --set strain=$e --out demo-strain$e; done
+      a family for tidegauge series: each grid has its strain as a tag`;
 
 const optionsSchema = z.object({
   list: z.literal(true).optional(),
@@ -37,6 +39,7 @@ const optionsSchema = z.object({
     .max(3, "expected two or three numbers")
     .optional(),
   set: z.array(z.string().regex(/^[^=]+=/, "expected NAME=VALUE")).default([]),
+  tag: z.array(z.string().regex(/^[^=]+=/, "expected NAME=VALUE")).default([]),
 });
 
 type Options = z.output<typeof optionsSchema>;
@@ -50,7 +53,8 @@ export function register(program: Command, context: Context): void {
     .option("--list", "print the models, or the parameters of the one that is named")
     .option("--mesh <N...>", "divisions of the mesh along b1, b2 (and b3)")
     .option("--offset <X...>", "where the mesh starts, in mesh steps, each from 0 to below 1")
-    .option("--set <NAME=VALUE...>", "parameters of the model")
+    .option("--set <NAME=VALUE...>", "parameters of the model; they are also written as tags of the grid")
+    .option("--tag <NAME=VALUE...>", "more tags of the grid, e.g. strain_percent=-1 (see tidegauge series)")
     .addHelpText("after", examples);
   command.action((name: string | undefined) => {
     const options = validated(optionsSchema, command.opts(), "sample");
@@ -111,7 +115,8 @@ function write(name: string, options: Options, globals: GlobalOptions, { termina
   const offset = options.offset === undefined ? standard.offset : threeOf(options.offset, "--offset", model);
   const task = progress("writing");
   try {
-    const grid = writeSample(model, { directory, divisions, offset }, (done, total) => {
+    const tags = tagsOf([...options.set, ...options.tag]);
+    const grid = writeSample(model, { directory, divisions, offset, tags }, (done, total) => {
       task.advance(done, total);
       return true;
     });
@@ -135,6 +140,14 @@ function write(name: string, options: Options, globals: GlobalOptions, { termina
   } finally {
     task.end();
   }
+}
+
+/** NAME=VALUE as tags: numbers where they read as numbers. The directory of a parameter file is not for a manifest. */
+function tagsOf(settings: readonly string[]): Record<string, string | number> {
+  const tags = settings.map(splitAtFirst).filter(([name]) => name !== "file");
+  return Object.fromEntries(
+    tags.map(([name, text]) => [name, text.trim() !== "" && Number.isFinite(Number(text)) ? Number(text) : text]),
+  );
 }
 
 function splitAtFirst(setting: string): [string, string] {

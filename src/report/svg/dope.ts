@@ -10,7 +10,7 @@ import { superscript, textLine, unitInPicture } from "./lettering.js";
 import { temperatureColours, tone } from "./palette.js";
 import type { Dot, Trace } from "./panel.js";
 import { panelAt, pictureSvg } from "./stack.js";
-import { edgePx, footerAt, legendAt, type Placed, ticksPx, titleAt } from "./surroundings.js";
+import { bandItem, edgePx, footerAt, legendOf, type Placed, ticksPx, titleAt } from "./surroundings.js";
 
 /** Dopings at which a line is drawn. */
 const drawnDopings = 241;
@@ -97,12 +97,13 @@ export function dopeSvg(result: DopeResult, curves: CurvesResult, options: { wid
   const axis = result.carriers === "few" ? decadeAxis(result) : linearAxis(result);
   const parts = [titleAt(title, widthPx, 18)];
   const bottomPx = (): number => parts[parts.length - 1].bottomPx;
-  const legend = {
-    ...curves,
-    temperature_K: result.temperature_K,
-    sampling: { ...curves.sampling, method: "points" as const },
-  };
-  parts.push(legendAt(legend, colours, widthPx, bottomPx() + 4));
+  const dot = (fill: string): string => `<circle cx="11" cy="-4" r="3.6" stroke="${tone.ink}" fill="${fill}"/>`;
+  const more = [
+    bandItem,
+    { label: "peak", swatch: dot(tone.ink) },
+    { label: "unresolved peak", swatch: dot(tone.paper) },
+  ];
+  parts.push(legendOf(result.temperature_K, colours, more, widthPx, bottomPx() + 4));
   for (const [at, { name, unit, peaks }] of result.responses.entries()) {
     const traces = result.temperature_K.map((kelvin, c) =>
       traceOf(curves, curves.responses[at], curves.temperature_K.indexOf(kelvin), axis, colours[c]),
@@ -112,8 +113,8 @@ export function dopeSvg(result: DopeResult, curves: CurvesResult, options: { wid
       return { x: axis.placeOf(doping.per_cell), value, error, colour, hollow: !resolved };
     });
     const panel = { words: quantityWords(name), name, unit: unitInPicture(unit), heightPx: 190, traces };
-    const more = { levelTicks: at === result.responses.length - 1, dots, ...(axis.ticks ? { ticks: axis.ticks } : {}) };
-    parts.push(panelAt(axis.x, panel, widthPx, bottomPx() + 14, `dope-${at + 1}`, more));
+    const axes = { levelTicks: at === result.responses.length - 1, dots, ...(axis.ticks ? { ticks: axis.ticks } : {}) };
+    parts.push(panelAt(axis.x, panel, widthPx, bottomPx() + 14, `dope-${at + 1}`, axes));
   }
   parts.push(nameAt(axis.name, widthPx, bottomPx()));
   parts.push(footerAt({ ...curves, notes: result.notes }, widthPx, bottomPx() + 14));

@@ -25,30 +25,29 @@ export function titleAt(text: string, widthPx: number, topPx: number): Placed {
   return { markup: markup.join("\n"), bottomPx: topPx + 22 * lines.length };
 }
 
-/** Swatch and label of each temperature, band and plain sum, flowing into as many rows as they need. */
-export function legendAt(result: CurvesResult, colours: readonly string[], widthPx: number, topPx: number): Placed {
-  const line = (colour: string, more: string): string =>
-    `<line x1="0" x2="22" y1="-4" y2="-4" stroke="${colour}" ${more}/>`;
-  const banded = result.responses.some(({ error }) => error.some((row) => row.some((bar) => bar > 0)));
-  const items = [
-    ...result.temperature_K.map((temperatureK, t) => ({
-      label: `${plain(temperatureK)} K`,
-      swatch: line(colours[t], 'stroke-width="2.4"'),
-    })),
-    ...(banded
-      ? [
-          {
-            label: "value ± one bar",
-            swatch: `<rect x="0" y="-10" width="22" height="11" fill="${tone.faint}" fill-opacity="0.25"/>`,
-          },
-        ]
-      : []),
-    ...(result.sampling.method !== "points"
-      ? [{ label: "plain mesh sum", swatch: line(tone.faint, 'stroke-width="1.2" stroke-dasharray="1.5 2"') }]
-      : []),
-  ];
+/** What a legend explains: markup of a swatch 22 px wide about its base line, and what it means. */
+interface LegendItem {
+  readonly label: string;
+  readonly swatch: string;
+}
+
+const lineSwatch = (colour: string, more: string): string =>
+  `<line x1="0" x2="22" y1="-4" y2="-4" stroke="${colour}" ${more}/>`;
+
+/** Swatch and label of each temperature and of whatever more there is, flowing into as many rows as they need. */
+export function legendOf(
+  temperaturesK: readonly number[],
+  colours: readonly string[],
+  more: readonly LegendItem[],
+  widthPx: number,
+  topPx: number,
+): Placed {
+  const lines = temperaturesK.map((temperatureK, t) => ({
+    label: `${plain(temperatureK)} K`,
+    swatch: lineSwatch(colours[t], 'stroke-width="2.4"'),
+  }));
   let [x, y] = [edgePx, topPx + 16];
-  const markup = items.map(({ label, swatch }) => {
+  const markup = [...lines, ...more].map(({ label, swatch }) => {
     const spacePx = 28 + textWidthPx(label, 12) + 16;
     if (x > edgePx && x + spacePx > widthPx - edgePx) [x, y] = [edgePx, y + 19];
     const placed = `<g transform="translate(${x},${y})">${swatch}${textLine(label, 28, 0, { sizePx: 12, colour: tone.ink })}</g>`;
@@ -56,6 +55,23 @@ export function legendAt(result: CurvesResult, colours: readonly string[], width
     return placed;
   });
   return { markup: `<g class="legend">${markup.join("")}</g>`, bottomPx: y + 8 };
+}
+
+/** The band of one bar. */
+export const bandItem: LegendItem = {
+  label: "value ± one bar",
+  swatch: `<rect x="0" y="-10" width="22" height="11" fill="${tone.faint}" fill-opacity="0.25"/>`,
+};
+
+/** The legend of a sweep: temperatures, band and plain sum. */
+export function legendAt(result: CurvesResult, colours: readonly string[], widthPx: number, topPx: number): Placed {
+  const banded = result.responses.some(({ error }) => error.some((row) => row.some((bar) => bar > 0)));
+  const plainSum = {
+    label: "plain mesh sum",
+    swatch: lineSwatch(tone.faint, 'stroke-width="1.2" stroke-dasharray="1.5 2"'),
+  };
+  const more = [...(banded ? [bandItem] : []), ...(result.sampling.method !== "points" ? [plainSum] : [])];
+  return legendOf(result.temperature_K, colours, more, widthPx, topPx);
 }
 
 /** Below the last panel: the mark of the reference level under its rule, and the name of the axis. */
