@@ -157,7 +157,7 @@ export function panelMarkup(
         : Plot.gridX({ stroke: tone.grid, strokeOpacity: 1, ticks: 9 }),
       Plot.gridY({ stroke: tone.grid, strokeOpacity: 1, ticks: tickCount(frame) }),
       Plot.ruleY([0], { stroke: tone.zero, strokeWidth: 1 }),
-      ...(domainX[0] <= 0 && domainX[1] >= 0
+      ...(options.ticks === undefined && domainX[0] <= 0 && domainX[1] >= 0
         ? [Plot.ruleX([0], { stroke: tone.reference, strokeWidth: 1, strokeDasharray: "5 3" })]
         : []),
       ...traces.flatMap((trace) => marksOf(levels, trace, scale)),

@@ -77,7 +77,7 @@ function surroundings(result: SeriesResult, widthPx: number, topPx: number): Pla
   const name = textLine(cleanLine(result.tag), middle, topPx + 38, { sizePx: 12, colour: tone.ink, anchor: "middle" });
   const texts = [
     "intrinsic only, rigid band — screening numbers",
-    `${result.members.length} grids; tidegauge ${cleanLine(result.version)}`,
+    `first grid: ${cleanLine(result.members[0].title)}; tidegauge ${cleanLine(result.version)}`,
     ...result.notes.slice(1),
   ];
   const lines = texts.flatMap((text) => fittingLines(text, widthPx - 2 * edgePx, 11));
@@ -93,7 +93,7 @@ function surroundings(result: SeriesResult, widthPx: number, topPx: number): Pla
  */
 export function seriesSvg(result: SeriesResult, options: { widthPx?: number } = {}): string {
   const widthPx = Math.max(480, Math.round(options.widthPx ?? 760));
-  const title = cleanLine(`${result.members[0].title} against ${result.tag}`);
+  const title = `${result.members.length} grids along ${cleanLine(result.tag)}`;
   const colours = temperatureColours(result.temperature_K.length);
   const parts = [titleAt(title, widthPx, 18)];
   const bottomPx = (): number => parts[parts.length - 1].bottomPx;
