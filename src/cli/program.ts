@@ -10,6 +10,11 @@ type Register = (program: Command, context: Context) => void;
 const commands: Readonly<Record<string, () => Promise<{ readonly register: Register }>>> = {
   inspect: () => import("./commands/inspect.js"),
   sweep: () => import("./commands/sweep.js"),
+  dope: () => import("./commands/dope.js"),
+  series: () => import("./commands/series.js"),
+  converge: () => import("./commands/converge.js"),
+  request: () => import("./commands/request.js"),
+  angle: () => import("./commands/angle.js"),
   sample: () => import("./commands/sample.js"),
 };
 

@@ -2,8 +2,9 @@
 import { join } from "node:path";
 import { usageFault } from "../base/errors.js";
 import { type ArrayPlan, type ArrayRole, bytesPerPoint, type FilePlan, isComplex } from "./arrays.js";
-import type { HessianKind, MomentFacts, Triple } from "./grid.js";
+import type { HessianKind, MomentFacts, PatchCells, Triple } from "./grid.js";
 import { type ArrayEntry, type Axis, formatName, type NumberType } from "./manifest.js";
+import { pointsPerCell } from "./patches.js";
 import { energyUnits, hessianUnits, momentUnits, velocityUnits } from "./units.js";
 
 /** What a band grid to be written holds; units as in GridFacts. At least one of fermiEv and electrons must be given. */
@@ -11,8 +12,11 @@ export interface GridDescription {
   readonly title: string;
   readonly vectorsA: readonly [Triple, Triple, Triple];
   readonly periodic: 2 | 3;
+  /** Of a patch: those of its parent. */
   readonly divisions: Triple;
   readonly offset: Triple;
+  /** Set where the points are those of a patch, cell after cell. */
+  readonly patch?: Omit<PatchCells, "name">;
   readonly bands: number;
   readonly electronsPerBand: 1 | 2;
   readonly fermiEv?: number | undefined;
@@ -83,6 +87,14 @@ export function planLayout(directory: string, description: GridDescription, layo
   return roles.map((role) => planRole(directory, description, role, layout.arrays?.[role.name] ?? {}));
 }
 
+/** Number of k points to be written. */
+function pointsOf({ divisions, patch }: GridDescription): number {
+  return patch === undefined ? divisions[0] * divisions[1] * divisions[2] : patch.cells.length * pointsPerCell(patch);
+}
+
+/** The file of a patch that lists its cells. */
+export const cellsFile = "cells.i32";
+
 function planRole(directory: string, description: GridDescription, role: Role, layout: ArrayLayout): PlannedArray {
   const unit = layout.unit ?? role.unit;
   const factor = role.units[unit];
@@ -95,7 +107,7 @@ function planRole(directory: string, description: GridDescription, role: Role, l
   if ([...axes].sort().join() !== [...role.axes].sort().join()) {
     throw usageFault(`${role.name} has the axes ${role.axes.join(", ")}`, "Name each of them once, in any order.");
   }
-  const points = description.divisions[0] * description.divisions[1] * description.divisions[2];
+  const points = pointsOf(description);
   const { bands } = description;
   const byteOrder = layout.byteOrder ?? "little";
   const shape = { name: role.name, role: role.role, axes, points, bands, components: role.components };
@@ -154,7 +166,9 @@ export function manifestOf(
     format: formatName,
     title: description.title,
     lattice: { unit: "angstrom", vectors: description.vectorsA, periodic: description.periodic },
-    mesh: { divisions: description.divisions, offset: description.offset },
+    ...(description.patch === undefined
+      ? { mesh: { divisions: description.divisions, offset: description.offset } }
+      : { patch: { divisions: description.patch.divisions, cells: cellsFile } }),
     bands: description.bands,
     electronsPerBand: description.electronsPerBand,
     level: { unit: "eV", fermi: description.fermiEv, electrons: description.electrons },

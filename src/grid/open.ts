@@ -61,8 +61,8 @@ function openArrays(directory: string, bytes: Uint8Array, manifest: Manifest, fa
   };
 }
 
-/** A patch that the grid of `parent` lists. */
-function openPatch(parent: GridFacts, name: string): Grid {
+/** A patch that the grid of `parent` lists, or may list: a directory within it. Throws a data Fault for what is no patch of it. */
+export function openPatch(parent: GridFacts, name: string): Grid {
   const directory = patchDirectory(parent.directory, name);
   const bytes = readManifestBytes(join(directory, manifestName));
   const manifest = parseManifest(bytes);

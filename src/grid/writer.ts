@@ -1,13 +1,21 @@
 // writer.ts: writes a band grid point by point; the directory appears under its name only when it is complete.
-import { join } from "node:path";
+import { basename, dirname, join } from "node:path";
 import { writeAtomically } from "../base/atomic.js";
 import { usageFault } from "../base/errors.js";
 import { factsOf } from "./checks.js";
 import { fileDigest } from "./fingerprint.js";
 import type { GridFacts } from "./grid.js";
-import { type GridDescription, type GridLayout, manifestOf, type PlannedArray, planLayout } from "./layout.js";
+import {
+  cellsFile,
+  type GridDescription,
+  type GridLayout,
+  manifestOf,
+  type PlannedArray,
+  planLayout,
+} from "./layout.js";
 import { manifestName } from "./manifest.js";
-import { type Grid, openGrid, parseManifest } from "./open.js";
+import { type Grid, openGrid, openPatch, parseManifest } from "./open.js";
+import { patchMesh } from "./patches.js";
 import { checkTarget, makeBeside, putInPlace, removeFlat } from "./replace.js";
 import {
   closeTarget,
@@ -37,10 +45,12 @@ export interface GridWriter {
 
 /**
  * Starts a band grid at `directory`, which must not exist, be empty, or hold an earlier band grid of this program, which is
- * then replaced at the end. Throws a usage or data Fault for a description or layout that makes no band grid.
+ * then replaced at the end. A patch is written into its parent's directory, which does not list it yet (see listPatch). Throws a usage or data Fault for a description or layout that makes no band grid.
  */
 export function createGridWriter(directory: string, description: GridDescription, layout: GridLayout = {}): GridWriter {
   const facts = checkedFacts(directory, description, layout);
+  const open = (path: string): Grid =>
+    description.patch === undefined ? openGrid(path) : openPatch(openGrid(dirname(path)).facts, basename(path));
   const destination = checkTarget(directory);
   const beside = makeBeside(destination);
   const planned = planLayout(beside, description, layout);
@@ -66,11 +76,12 @@ export function createGridWriter(directory: string, description: GridDescription
     flush(facts, targets, state);
     targets.forEach(closeTarget);
     writeManifest(beside, description, targets, layout.sha256 === true);
+    if (description.patch !== undefined) writeAtomically(join(beside, cellsFile), cellBytes(description.patch.cells));
     // Opened where it is: a grid that cannot be read must not replace one that can.
-    openGrid(beside);
+    open(beside);
     putInPlace(beside, destination);
     state.open = false;
-    return openGrid(directory);
+    return open(directory);
   };
   const discard = (): void => {
     if (!state.open) return;
@@ -79,6 +90,15 @@ export function createGridWriter(directory: string, description: GridDescription
     removeFlat(beside);
   };
   return { add, finish, discard, written: () => state.written };
+}
+
+/** 32-bit little-endian whole numbers. */
+function cellBytes(cells: Int32Array): Buffer {
+  const bytes = Buffer.alloc(4 * cells.length);
+  cells.forEach((cell, i) => {
+    bytes.writeInt32LE(cell, 4 * i);
+  });
+  return bytes;
 }
 
 function createTargets(directory: string, planned: readonly PlannedArray[], blockPoints: number): Target[] {
@@ -95,7 +115,10 @@ const defaultBlockBytes = 16 * 1024 * 1024;
 /** The facts of the grid to be written, by way of the manifest that it will have, so that no other rules apply. */
 function checkedFacts(directory: string, description: GridDescription, layout: GridLayout): GridFacts {
   const manifest = manifestOf(description, planLayout("", description, layout), new Map());
-  const facts = factsOf(parseManifest(Buffer.from(JSON.stringify(manifest))), "the grid to be written");
+  const { patch } = description;
+  const named = patch && { ...patch, name: basename(directory) };
+  const mesh = named && { ...patchMesh(description, named), patch: named };
+  const facts = factsOf(parseManifest(Buffer.from(JSON.stringify(manifest))), "the grid to be written", mesh);
   return { ...facts, directory, sha256: "", bytes: 0 };
 }
 

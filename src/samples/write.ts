@@ -1,7 +1,8 @@
 // write.ts: samples a model on a mesh and streams the matrices, in the eigenbasis of each k point, into a band grid.
 import { usageFault } from "../base/errors.js";
-import type { HessianKind, MomentFacts, Triple } from "../grid/grid.js";
+import type { HessianKind, MomentFacts, PatchCells, Triple } from "../grid/grid.js";
 import type { Grid } from "../grid/open.js";
+import { patchMesh } from "../grid/patches.js";
 import { createGridWriter, type GridLayout } from "../grid/writer.js";
 import { reciprocalVectors } from "../zone/lattice.js";
 import { cartesianK, fractionalK } from "../zone/mesh.js";
@@ -16,6 +17,8 @@ export interface WriteSampleOptions {
   readonly offset?: Triple;
   /** False leaves the second derivatives out; true where left out, if the model has them. */
   readonly hessian?: boolean;
+  /** Set to write a patch: `directory` then lies in a parent of these divisions and this offset, which is not changed. */
+  readonly patch?: Omit<PatchCells, "name">;
   readonly layout?: GridLayout;
   readonly tags?: Readonly<Record<string, string | number | boolean>>;
   /** Kept in the manifest beside the model's source. */
@@ -53,7 +56,8 @@ export function writeSample(
   checkMesh(model, divisions, offset);
   const hessian = sampleHessian(model, options.hessian ?? true);
   const { title, vectorsA, periodic, bands, electronsPerBand, fermiEv, electrons } = model;
-  const facts = { title, vectorsA, periodic, divisions, offset, bands, electronsPerBand, fermiEv, electrons };
+  const { patch } = options;
+  const facts = { title, vectorsA, periodic, divisions, offset, patch, bands, electronsPerBand, fermiEv, electrons };
   const writer = createGridWriter(
     options.directory,
     {
@@ -67,10 +71,11 @@ export function writeSample(
   );
   const sample = createSampler(model, hessian);
   const reciprocal = reciprocalVectors(vectorsA);
-  const total = divisions[0] * divisions[1] * divisions[2];
+  const mesh = { vectorsA, periodic, ...meshOf(divisions, offset, patch) };
+  const total = mesh.points;
   try {
     for (let flat = 0; flat < total; flat++) {
-      writer.add(sample(cartesianK(fractionalK(flat, facts), reciprocal)));
+      writer.add(sample(cartesianK(fractionalK(flat, mesh), reciprocal)));
       const told = (flat + 1) % progressStep === 0 || flat + 1 === total;
       if (told && onProgress?.(flat + 1, total) === false) {
         writer.discard();
@@ -82,6 +87,13 @@ export function writeSample(
     writer.discard();
     throw error;
   }
+}
+
+/** The mesh whose points are written: all of it, or a patch's. */
+function meshOf(divisions: Triple, offset: Triple, cells: WriteSampleOptions["patch"]) {
+  if (cells === undefined) return { divisions, offset, points: divisions[0] * divisions[1] * divisions[2] };
+  const patch = { ...cells, name: "" };
+  return { ...patchMesh({ divisions, offset }, patch), patch };
 }
 
 function checkMesh(model: SampleModel, divisions: Triple, offset: Triple): void {

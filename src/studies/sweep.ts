@@ -44,6 +44,15 @@ async function shareLeft(
   return modelShare(grid, job, own, sections, modelOrderOf(grid.facts.hessian));
 }
 
+/** Computes a planned sweep; also tells the settings of its refinement, where it had one. */
+export async function sweepPlanned(
+  planned: SweepPlan,
+  run: RunOptions,
+): Promise<{ readonly curves: CurvesResult; readonly refined: RefineJob | undefined }> {
+  const computed = await compute(planned, run);
+  return { curves: assembleResult(planned, computed), refined: computed.refined };
+}
+
 /** Computes a sweep. The result does not depend on the number of workers. */
 export async function sweep(
   directory: string,
@@ -51,6 +60,5 @@ export async function sweep(
   run: RunOptions,
   part: SweptPart = {},
 ): Promise<CurvesResult> {
-  const planned = planSweep(directory, options, part);
-  return assembleResult(planned, await compute(planned, run));
+  return (await sweepPlanned(planSweep(directory, options, part), run)).curves;
 }

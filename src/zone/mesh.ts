@@ -2,7 +2,7 @@
 import type { GridFacts, Triple } from "../grid/grid.js";
 import { reciprocalVectors, type Vectors } from "./lattice.js";
 
-export type MeshFacts = Pick<GridFacts, "vectorsA" | "divisions" | "offset" | "periodic">;
+export type MeshFacts = Pick<GridFacts, "vectorsA" | "divisions" | "offset" | "periodic" | "patch">;
 
 /** (i1, i2, i3) of a flat index; i3 runs fastest. */
 export function meshIndices(flat: number, divisions: Triple): Triple {
@@ -19,9 +19,20 @@ export function neighbourIndex(flat: number, divisions: Triple, j: number, step:
   return (index[0] * divisions[1] + index[1]) * divisions[2] + index[2];
 }
 
-/** Fractional coordinates of a mesh point in b1, b2, b3. */
+/** Indices of a stored point on the mesh of its facts: of a patch's point on the finer mesh. */
+function storedIndices(flat: number, { divisions, patch }: MeshFacts): Triple {
+  if (patch === undefined) return meshIndices(flat, divisions);
+  const m = patch.divisions;
+  const perCell = m[0] * m[1] * m[2];
+  const coarse: Triple = [divisions[0] / m[0], divisions[1] / m[1], divisions[2] / m[2]];
+  const cell = meshIndices(patch.cells[Math.floor(flat / perCell)], coarse);
+  const place = meshIndices(flat % perCell, m);
+  return [cell[0] * m[0] + place[0], cell[1] * m[1] + place[1], cell[2] * m[2] + place[2]];
+}
+
+/** Fractional coordinates of a stored point in b1, b2, b3. */
 export function fractionalK(flat: number, mesh: MeshFacts): Triple {
-  const index = meshIndices(flat, mesh.divisions);
+  const index = storedIndices(flat, mesh);
   return [0, 1, 2].map((j) => (index[j] + mesh.offset[j]) / mesh.divisions[j]) as unknown as Triple;
 }
 

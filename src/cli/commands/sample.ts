@@ -1,4 +1,5 @@
 // sample.ts: `tidegauge sample`: lists the built-in models and writes one of them as a band grid.
+import { dirname, resolve } from "node:path";
 import type { Command } from "commander";
 import { z } from "zod";
 import { usageFault } from "../../base/errors.js";
@@ -9,8 +10,10 @@ import { table } from "../../report/table.js";
 import { buildSample, defaultMesh, sampleCatalogue, sampleNamed } from "../../samples/catalogue.js";
 import type { SampleModel } from "../../samples/model.js";
 import type { Sample } from "../../samples/parameter.js";
+import { writePatch } from "../../samples/patch.js";
 import { writeSample } from "../../samples/write.js";
 import { type Context, type GlobalOptions, requiredOut } from "../context.js";
+import { checkRequested, readRequest } from "../requestfile.js";
 import { typedNumber, typedWhole, validated } from "../validated.js";
 
 const examples = `
@@ -24,7 +27,9 @@ Examples:
   tidegauge sample haldane --mesh 24 24 --offset 0.5 0.5 --out haldane-24
       a mesh of one's own, moved by half a step off the zone's centre
   for e in -0.01 0 0.01; do tidegauge sample demo --mesh 8 8 8 --set strain=$e --out demo-strain$e; done
-      a family for tidegauge series: each grid has its strain as a tag`;
+      a family for tidegauge series: each grid has its strain as a tag
+  tidegauge sample metal --request next/request.json --out gold/patch-01
+      the k points that tidegauge request asked for, entered into the grid "gold" that this model made`;
 
 const optionsSchema = z.object({
   list: z.literal(true).optional(),
@@ -38,6 +43,7 @@ const optionsSchema = z.object({
     .min(2, "expected two or three numbers")
     .max(3, "expected two or three numbers")
     .optional(),
+  request: z.string().min(1).optional(),
   set: z.array(z.string().regex(/^[^=]+=/, "expected NAME=VALUE")).default([]),
   tag: z.array(z.string().regex(/^[^=]+=/, "expected NAME=VALUE")).default([]),
 });
@@ -53,6 +59,7 @@ export function register(program: Command, context: Context): void {
     .option("--list", "print the models, or the parameters of the one that is named")
     .option("--mesh <N...>", "divisions of the mesh along b1, b2 (and b3)")
     .option("--offset <X...>", "where the mesh starts, in mesh steps, each from 0 to below 1")
+    .option("--request <FILE>", "write the cells that a request.json names, as a patch inside the grid of this model")
     .option("--set <NAME=VALUE...>", "parameters of the model; they are also written as tags of the grid")
     .option("--tag <NAME=VALUE...>", "more tags of the grid, e.g. strain_percent=-1 (see tidegauge series)")
     .addHelpText("after", examples);
@@ -61,6 +68,7 @@ export function register(program: Command, context: Context): void {
     const globals = command.optsWithGlobals<GlobalOptions>();
     if (options.list) list(name, globals, context);
     else if (name === undefined) throw usageFault("no model is named", "see tidegauge sample --list");
+    else if (options.request !== undefined) writeRequested(name, options.request, options, globals, context);
     else write(name, options, globals, context);
   });
 }
@@ -148,6 +156,50 @@ function tagsOf(settings: readonly string[]): Record<string, string | number> {
   return Object.fromEntries(
     tags.map(([name, text]) => [name, text.trim() !== "" && Number.isFinite(Number(text)) ? Number(text) : text]),
   );
+}
+
+function writeRequested(
+  name: string,
+  file: string,
+  options: Options,
+  globals: GlobalOptions,
+  { terminal, progress }: Context,
+): void {
+  const idle = options.mesh !== undefined ? "--mesh" : options.offset !== undefined ? "--offset" : undefined;
+  if (idle !== undefined)
+    throw usageFault(`${idle} means nothing beside --request`, "Leave it out: the request names the points.");
+  const directory = requiredOut(globals);
+  const asked = readRequest(file);
+  const model = buildSample(name, Object.fromEntries(options.set.map(splitAtFirst)));
+  checkRequested(asked, dirname(resolve(directory)));
+  const patch = { divisions: asked.divide, cells: Int32Array.from(asked.cells, ({ cell }) => cell) };
+  const task = progress("writing");
+  try {
+    const grid = writePatch(model, directory, patch, (done, total) => {
+      task.advance(done, total);
+      return true;
+    });
+    task.end();
+    if (grid === undefined) return;
+    const { points, bytes, sha256 } = grid.facts;
+    const cells = patch.cells.length;
+    if (globals.json)
+      terminal.printJson({
+        format: "tidegauge.sample/1",
+        directory,
+        cells,
+        divide: asked.divide,
+        points,
+        bytes,
+        sha256,
+      });
+    else
+      terminal.print(
+        `${directory}: ${grouped(points)} k points in ${grouped(cells)} cells; ${dirname(resolve(directory))} lists this patch now`,
+      );
+  } finally {
+    task.end();
+  }
 }
 
 function splitAtFirst(setting: string): [string, string] {
