@@ -10,6 +10,8 @@ export const rydbergEv = hartreeEv / 2;
 export const bohrA = 0.529177210544;
 /** Conductance e^2/hbar, siemens: 2 pi / (25812.80745... ohm), exact through e and h. */
 export const e2OverHbarS = 2.434134805788e-4;
+/** Elementary charge, coulomb (exact in the SI). */
+export const chargeC = 1.602176634e-19;
 /** hbar^2 / m_e in eV angstrom^2: hartree times bohr^2. */
 export const hbar2OverMeEvA2 = hartreeEv * bohrA * bohrA;
 /** hbar in eV s (exact in the SI, rounded). */
