@@ -12,7 +12,7 @@ export interface SubMeshCurves {
  * How the error of a plain sum over a metal falls with the mesh step h: counting lattice points inside a smooth Fermi surface errs
  * like h^((d + 1) / 2) (van der Corput's estimate; d = 2, 3). Insulators and warm metals fall faster, so that the bar is then wide.
  */
-const sharpSurfaceOrder = (dimension: 2 | 3): number => (dimension + 1) / 2;
+export const sharpSurfaceOrder = (dimension: 2 | 3): number => (dimension + 1) / 2;
 
 /** Root mean square spread of the sub-mesh curves about their mean, scaled down to the full mesh: out[column]. */
 export function spreadSampler(curves: SubMeshCurves, columns: number): CurveSampler {
