@@ -17,6 +17,7 @@ import {
   dopingUnits,
   heldByAll,
   indicesOf,
+  peakCurve,
   peaksOf,
   preparedDoping,
   robustnessK,
@@ -88,8 +89,7 @@ function responseResult(
 ): DopeResponse {
   const { curves } = doped;
   const ends = temperatures.flatMap((t) => {
-    const curve = { levelsEv: curves.level_eV, value: response.value[t], error: response.error[t] };
-    return growsBeyond(curve).map((end) => {
+    return growsBeyond(peakCurve(curves, response, t)).map((end) => {
       const at = end === "low" ? 0 : curves.level_eV.length - 1;
       return {
         temperature_K: curves.temperature_K[t],

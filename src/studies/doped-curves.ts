@@ -10,7 +10,7 @@ import {
   neutralElectrons,
   responseAt,
 } from "../curves/doping.js";
-import { findPeaks, type Peak } from "../curves/peaks.js";
+import { findPeaks, type Peak, type PeakCurve } from "../curves/peaks.js";
 import type { CurvesResult, ResponseCurve } from "../curves/result.js";
 import type { DopedValue, DopePeak, RigidBandStretch } from "./dope-result.js";
 import { type DopingScale, dopingAmount, rigidBandStretch } from "./doping-amount.js";
@@ -119,6 +119,16 @@ function peakResult(doped: Doped, response: ResponseCurve, t: number, peak: Peak
   };
 }
 
+/** Responses that nowhere exceed this, in any unit on offer, are the round-off of sums over large terms that cancel: zero. */
+const roundOff = 1e-7;
+
+/** A response at temperature number `t` as the search for peaks takes it. */
+export function peakCurve(curves: CurvesResult, response: ResponseCurve, t: number): PeakCurve {
+  const largest = response.value[t].reduce((most, each) => Math.max(most, Math.abs(each) || 0), 0);
+  const value = largest < roundOff ? response.value[t].map(() => 0) : response.value[t];
+  return { levelsEv: curves.level_eV, value, error: response.error[t] };
+}
+
 /** The peaks of a response at temperature number `t`: resolved ones first, then by height. */
 export function peaksOf(
   doped: Doped,
@@ -127,8 +137,7 @@ export function peaksOf(
   resolution: { meshEv: number; prominence: number },
 ): DopePeak[] {
   const { curves } = doped;
-  const curve = { levelsEv: curves.level_eV, value: response.value[t], error: response.error[t] };
-  return findPeaks(curve, {
+  return findPeaks(peakCurve(curves, response, t), {
     temperatureK: curves.temperature_K[t],
     meshEv: resolution.meshEv,
     leastProminence: resolution.prominence,
