@@ -4,6 +4,8 @@
 export interface MeshCurves {
   /** Mesh step over that of the finest mesh; 1 for the finest. */
   readonly step: number;
+  /** The spread of its plain sums tells nothing, by symmetry. */
+  readonly blind?: boolean;
   /** Plain sums, [shift][level]. */
   readonly plain: readonly (readonly number[])[];
   /** Refined values, [shift][level]; may be empty. */
@@ -152,19 +154,23 @@ function coherence(finest: readonly number[], meshes: readonly MeshCurves[]): nu
 export function plainBounds(evidence: Evidence): Bounds {
   const [finest, ...coarser] = evidence.meshes;
   const own = finest.plain[0];
+  const telling = coarser.filter(({ blind }) => !blind);
   const fits = localFits(
     own,
-    coarser.map(({ step, plain }) => ({ step, curves: plain })),
+    telling.map(({ step, plain }) => ({ step, curves: plain })),
     aliasGrowth,
     evidence.plainOrder,
     evidence.reach,
   );
-  const inPhase = coherence(own, coarser);
+  const inPhase = coherence(own, telling);
   const spread = fits.map(({ error }) => 2 * inPhase * error);
   const rates = fits.map(({ rate, from }) => ({ rate, from }));
   const refined = finest.refined[0];
   if (refined === undefined) return { bound: spread, rates };
-  const measured = distance([own], refined, evidence.reach);
+  // Neighbours may only raise what is seen at a level itself.
+  const measured = distance([own], refined, evidence.reach).map((off, level) =>
+    Math.max(off, Math.abs(own[level] - refined[level])),
+  );
   const bound = measured.map((off, level) => {
     const surely = off + 2 * evidence.bar[level];
     const agrees = off <= 2 * evidence.bar[level];

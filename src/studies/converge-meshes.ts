@@ -53,7 +53,11 @@ const mostRefinedStrides = 2;
 /** Coarser meshes only tell an error: their cells may disagree by more. */
 const leniency = 6;
 
-const meshOf = (facts: GridFacts, step: number, origin: string): Omit<ConvergeMesh, "shifts" | "shifts_refined"> => ({
+const meshOf = (
+  facts: GridFacts,
+  step: number,
+  origin: string,
+): Omit<ConvergeMesh, "shifts" | "shifts_refined" | "blind"> => ({
   divisions: facts.divisions.slice(0, facts.periodic),
   points: facts.points,
   step,
@@ -161,7 +165,7 @@ export async function containedMeshes(directory: string, wish: MeshWish, run: Ru
   let samples = curves.sampling.samples + facts.points;
   const swept: SweptMesh[] = [
     {
-      mesh: { ...meshOf(facts, 1, "stored"), shifts: 1, shifts_refined: values.length },
+      mesh: { ...meshOf(facts, 1, "stored"), shifts: 1, shifts_refined: values.length, blind: false },
       plain: [sums],
       refined: values,
     },
@@ -176,11 +180,15 @@ export async function containedMeshes(directory: string, wish: MeshWish, run: Ru
     }
     samples += points * views.length;
     const divisions = facts.divisions.slice(0, facts.periodic).map((n) => n / stride);
-    const counts = { shifts: plain.length, shifts_refined: models.length };
+    const counts = { shifts: plain.length, shifts_refined: models.length, blind: mirrored(facts, stride) };
     swept.push({ mesh: { divisions, points, step: stride, origin: "contained", ...counts }, plain, refined: models });
   }
   return { facts, sweeps: [curves], swept, samples };
 }
+
+/** The two halves of a direction of a mesh that is moved by half a step lie at +-1/4 of their own step: mirrors exchange them. */
+const mirrored = ({ offset, periodic }: GridFacts, stride: number): boolean =>
+  stride === 2 && offset.slice(0, periodic).some((x) => Math.abs(x - 0.5) < 1e-9);
 
 /** The views with the one whose offset within its own step is the stored mesh's moved to the front, where there is such a one. */
 function ownKindFirst({ offset, periodic }: GridFacts, stride: number, views: readonly View[]): View[] {
@@ -210,7 +218,7 @@ export async function familyMeshes(directories: readonly string[], wish: MeshWis
   const swept = grids.map(({ directory, facts }, at): SweptMesh => {
     const step = (densest.facts.points / facts.points) ** (1 / facts.periodic);
     const values = wish.sweep.method === "refine" ? [tablesOf(sweeps[at], "value")] : [];
-    const mesh = { ...meshOf(facts, step, directory), shifts: 1, shifts_refined: values.length };
+    const mesh = { ...meshOf(facts, step, directory), shifts: 1, shifts_refined: values.length, blind: false };
     return { mesh, plain: [tablesOf(sweeps[at], "points")], refined: values };
   });
   return {

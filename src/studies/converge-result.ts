@@ -12,9 +12,14 @@ export interface ConvergeMesh {
   /** Meshes of this density that differ in their shift: how many gave plain sums, how many refined values. */
   shifts: number;
   shifts_refined: number;
+  /** The crystal's mirrors carry every shift into every other, so that their spread tells nothing: halves of a mesh moved by half a step. */
+  blind: boolean;
 }
 
-/** Values on one density, by level. Means over the shifts, and root mean square distances to the best value known. */
+/**
+ * Values on one density, by level: of the shift that lies as the densest mesh does, where there is such a one; and root mean square distances of all
+ * shifts and neighbouring levels to the best value known. (The mean of the plain sums over all shifts is always the stored mesh's plain sum.)
+ */
 export interface MeshValues {
   plain: number[];
   plain_off: number[];

@@ -108,6 +108,7 @@ function evidenceOf({ swept, sweeps, facts }: Meshes, at: number, t: number): Ev
   return {
     meshes: swept.map(({ mesh, plain, refined }) => ({
       step: mesh.step,
+      blind: mesh.blind,
       plain: rows(plain),
       refined: rows(refined),
     })),
@@ -160,14 +161,11 @@ const written = ({ bound, rates }: Bounds): ConvergeBounds => ({
   rate_from: Math.min(...rates.map(({ from }) => from)),
 });
 
-const meanOf = (curves: readonly (readonly number[])[]): number[] =>
-  (curves[0] ?? []).map((_, level) => curves.reduce((sum, curve) => sum + curve[level], 0) / curves.length);
-
 function valuesOf({ plain, refined }: Evidence["meshes"][number], best: readonly number[], reach: number): MeshValues {
   return {
-    plain: meanOf(plain),
+    plain: [...plain[0]],
     plain_off: distance(plain, best, reach),
-    refined: meanOf(refined),
+    refined: [...(refined[0] ?? [])],
     refined_off: refined.length === 0 ? [] : distance(refined, best, reach),
   };
 }
