@@ -20,7 +20,7 @@ import {
   velocityDirection,
   velocityOf,
 } from "./operators.js";
-import { addPairs, fillInverse, packAntiHermitian, packHermitian, pairCount, weighPairs } from "./pairs.js";
+import { addPairs, fillInverse, packAntiHermitian, packHermitian, pairCount, weighPairs, writePairs } from "./pairs.js";
 import { multiplyInto } from "./product.js";
 import { averageOverSets, fillEnds, lowerSquares, rotatedSquares } from "./sets.js";
 
@@ -45,6 +45,11 @@ export interface LocalModel {
    * a direction that is not among spec.directions counts as zero. Throws a Fault where a matrix is not finite.
    */
   evaluate(qx: number, qy: number, qz: number, curvature: Float64Array): void;
+  /**
+   * Of the last evaluation, with one of the denominators: what each pair n < m adds to the curvature of n and takes from that of m, at
+   * out[product * pairCount + pair].
+   */
+  pairCurvatures(denominator: number, out: Float64Array): void;
   /** Energies at q, eV, ascending. */
   readonly energyEv: Float64Array;
   /** Slopes dE/dk of the model at q, eV angstrom, [band * 3 + direction]; zero for directions not asked for. */
@@ -168,43 +173,40 @@ function pairsOf(packs: readonly Pack[], bands: number, wanted: Operator): numbe
   return -1;
 }
 
-/** From the pairs of all operators to the curvatures of every denominator and product. */
-function createCurvatures({ bands, products, denominators }: LocalSpec, packs: readonly Pack[]) {
+/** What is done with the pairs of one product: current elements at one offset, weighted field elements at another. */
+type TakePairs = (product: number, currentOffset: number, weights: Float64Array, weightOffset: number) => void;
+
+/** From the pairs of all operators to those of every product's current and field, with one of the denominators. */
+function createProducts({ bands, products, denominators }: LocalSpec, packs: readonly Pack[]) {
   const count = pairCount(bands);
   const inverse = new Float64Array(count);
   const weights = new Float64Array(3 * 2 * count);
   const fields = [...new Set(products.map((product) => product.field))];
   const fieldPairs = fields.map((field) => pairsOf(packs, bands, velocityOf(field)));
   const currentPairs = products.map((product) => pairsOf(packs, bands, currentOf(product)));
-  return (energyEv: Float64Array, pairs: Float64Array, curvature: Float64Array): void => {
-    curvature.fill(0, 0, denominators.length * products.length * bands);
-    for (let d = 0; d < denominators.length; d++) {
-      fillInverse(bands, energyEv, 0, denominators[d], inverse, 0);
-      for (let i = 0; i < fields.length; i++) {
-        weighPairs(count, pairs, fieldPairs[i], inverse, 0, weights, fields[i] * 2 * count);
-      }
-      for (let p = 0; p < products.length; p++) {
-        const at = (d * products.length + p) * bands;
-        addPairs(bands, pairs, currentPairs[p], weights, products[p].field * 2 * count, curvature, at);
-      }
-    }
+  return (energyEv: Float64Array, pairs: Float64Array, denominator: number, take: TakePairs): void => {
+    fillInverse(bands, energyEv, 0, denominators[denominator], inverse, 0);
+    for (let i = 0; i < fields.length; i++)
+      weighPairs(count, pairs, fieldPairs[i], inverse, 0, weights, fields[i] * 2 * count);
+    for (let p = 0; p < products.length; p++) take(p, currentPairs[p], weights, products[p].field * 2 * count);
   };
 }
 
 /** A local model for points of spec.bands bands. Nothing is allocated per step. */
 export function createLocalModel(spec: LocalSpec): LocalModel {
-  const { bands, hessian, directions, togetherEv = 0 } = spec;
+  const { bands, hessian, directions, products, denominators, togetherEv = 0 } = spec;
   const store = createOperatorStore(spec);
   const rotation = createRotation(bands, store);
   const hamiltonian = createHamiltonian(bands, hessian, directions);
   const solve = createEigensolver(bands);
-  const addCurvatures = createCurvatures(spec, store.packs);
+  const visitProducts = createProducts(spec, store.packs);
   const energyEv = new Float64Array(bands);
   const slopes = new Float64Array(3 * bands);
   const squares = new Float64Array(3 * bands);
   const mean = new Float64Array(3 * bands);
   const vectors = new Float64Array(2 * bands * bands);
-  const pairs = new Float64Array(store.packs.length * 4 * pairCount(bands));
+  const count = pairCount(bands);
+  const pairs = new Float64Array(store.packs.length * 4 * count);
   const step = new Float64Array(3);
   const into: Rotated = { slopes, squares, pairs };
 
@@ -224,11 +226,19 @@ export function createLocalModel(spec: LocalSpec): LocalModel {
       averageOverSets(energyEv, mean, togetherEv);
       addFreeElectron(step, mean, energyEv, into);
     }
-    addCurvatures(energyEv, pairs, curvature);
+    curvature.fill(0, 0, denominators.length * products.length * bands);
+    for (let d = 0; d < denominators.length; d++)
+      visitProducts(energyEv, pairs, d, (p, current, weights, field) =>
+        addPairs(bands, pairs, current, weights, field, curvature, (d * products.length + p) * bands),
+      );
   };
+  const pairCurvatures = (denominator: number, out: Float64Array) =>
+    visitProducts(energyEv, pairs, denominator, (p, current, weights, field) =>
+      writePairs(count, pairs, current, weights, field, out, p * count),
+    );
   const load = (point: PointRef) => {
     store.load(point);
     hamiltonian.load(point);
   };
-  return { load, evaluate, energyEv, slopes, squares, vectors };
+  return { load, evaluate, pairCurvatures, energyEv, slopes, squares, vectors };
 }

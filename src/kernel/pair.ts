@@ -4,7 +4,7 @@
 // flow direction; the charge current needs none. The matrix product is where the time goes.
 
 import type { Denominator, MatrixRef, PointRef, Product } from "./kernel.js";
-import { addPairs, fillInverse, packHermitian, pairCount, weighPairs } from "./pairs.js";
+import { addPairs, fillInverse, packHermitian, pairCount, weighPairs, writePairs } from "./pairs.js";
 import { copyPadded, multiplyInto } from "./product.js";
 
 /** The pair sum at one point after another; scratch is kept inside, so one pass serves one thread. */
@@ -15,6 +15,8 @@ export interface PairPass {
    * velocities and moments that the products name must be there.
    */
   run(point: PointRef, out: Float64Array): void;
+  /** What each pair n < m adds to the curvature of n and takes from that of m, out[product * pairCount + pair]; see pairs.ts. */
+  pairs(point: PointRef, out: Float64Array): void;
   /** The function `slopes` of this file. */
   slopes(point: PointRef, out: Float64Array): void;
 }
@@ -76,22 +78,27 @@ export function createPairPass(bands: number, products: readonly Product[], deno
   const fields = [...new Set(products.map((product) => product.field))];
   const formCurrent = createCurrent(bands);
 
-  const run = (point: PointRef, out: Float64Array) => {
+  type Take = (product: number, weightOffset: number) => void;
+  /** Forms the pairs of every product's current and field, one after another, for `take` to multiply. */
+  const visit = (point: PointRef, take: Take) => {
     fillInverse(bands, point.energyEv, point.energyOffset, denominator, inverse, 0);
     for (const field of fields) {
       const { data, offset } = point.velocity[field] as MatrixRef;
       packHermitian(bands, bands, data, offset, elements, 0);
       weighPairs(count, elements, 0, inverse, 0, weights, field * 2 * count);
     }
-    out.fill(0, 0, products.length * bands);
     for (const { moment, flow, members } of groups) {
       const v = point.velocity[flow] as MatrixRef;
       if (moment < 0) packHermitian(bands, bands, v.data, v.offset, elements, 0);
       else formCurrent(point.moments[moment], v, elements);
-      for (let i = 0; i < members.length; i += 2) {
-        addPairs(bands, elements, 0, weights, members[i] * 2 * count, out, members[i + 1] * bands);
-      }
+      for (let i = 0; i < members.length; i += 2) take(members[i + 1], members[i] * 2 * count);
     }
   };
-  return { run, slopes };
+  const run = (point: PointRef, out: Float64Array) => {
+    out.fill(0, 0, products.length * bands);
+    visit(point, (product, at) => addPairs(bands, elements, 0, weights, at, out, product * bands));
+  };
+  const pairs = (point: PointRef, out: Float64Array) =>
+    visit(point, (product, at) => writePairs(count, elements, 0, weights, at, out, product * count));
+  return { run, pairs, slopes };
 }

@@ -128,3 +128,23 @@ export function addPairs(
     omega[at + n] += own;
   }
 }
+
+/**
+ * Writes what addPairs would add to band n and take from band m, pair by pair: out[at + pair] = -2 Im(<n|j|m> conj(<n|w|m>)), so that
+ * the curvature of a band is the sum of its row less the sum of its column.
+ */
+export function writePairs(
+  count: number,
+  current: Float64Array,
+  currentOffset: number,
+  weight: Float64Array,
+  weightOffset: number,
+  out: Float64Array,
+  at: number,
+): void {
+  for (let pair = 0; pair < count; pair++) {
+    const j = currentOffset + 2 * pair;
+    const w = weightOffset + 2 * pair;
+    out[at + pair] = 2 * (current[j] * weight[w + 1] - current[j + 1] * weight[w]);
+  }
+}
