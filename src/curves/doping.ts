@@ -75,15 +75,21 @@ const emptyGap = 1e-5;
 /** States per eV at the reference, in parts of the window's mean, below which carriers are few: a gap, a band edge, a semimetal. */
 const fewStates = 0.1;
 
+/** From here on heat bridges the gaps between the points of a usual mesh. */
+const smoothK = 300;
+
 /**
  * Whether the reference level lies in a gap, at a band's edge or where states are few (then concentrations span decades), and the
  * levels between which the coldest curve of the result counts as neutral.
  */
 export function carriersOf(curves: CurvesResult): { few: boolean; neutralEv: readonly [number, number] } {
-  const { level_eV: levels, states_per_eV: states } = curves;
-  const mean = states[0].reduce((sum, value) => sum + value, 0) / levels.length;
+  const { level_eV: levels, states_per_eV, sampling, temperature_K: temperatures } = curves;
+  const warm = temperatures.findIndex((kelvin) => kelvin >= smoothK);
+  // The plain sum of a metal has no states between its points: it is asked where heat bridges them.
+  const states = states_per_eV[sampling.method === "points" && warm >= 0 ? warm : 0];
+  const mean = states.reduce((sum, value) => sum + value, 0) / levels.length;
   const few =
-    levels[0] <= 0 && levels[levels.length - 1] >= 0 && linearAt({ x: levels, y: states[0] }, 0) < fewStates * mean;
+    levels[0] <= 0 && levels[levels.length - 1] >= 0 && linearAt({ x: levels, y: states }, 0) < fewStates * mean;
   const cold = dopingCurve(curves, 0);
   const neutral = levels.filter((_, i) => Math.abs(cold.perCell[i]) < emptyGap);
   const inside = few && neutral.length > 0 && neutral[0] <= 0 && neutral[neutral.length - 1] >= 0;

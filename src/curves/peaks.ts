@@ -35,8 +35,10 @@ export interface Peak {
 /** What a curve cannot show: peaks narrower than the level step, the thermal width or the mesh allow. */
 export interface Resolution {
   readonly temperatureK: number;
-  /** Energy that the mesh resolves, eV; 0 where the method looks inside the cells. */
+  /** Energy that one mesh step resolves, eV; 0 where the method looks inside the cells. */
   readonly meshEv: number;
+  /** By how much the bars may be too narrow: 1 where they are calibrated. */
+  readonly barFactor: number;
   /** Peaks with less than this part of the largest |value| as prominence are left out. */
   readonly leastProminence: number;
 }
@@ -45,7 +47,7 @@ export interface Resolution {
 const thermalWidth = 4 * Math.acosh(Math.SQRT2);
 /** A line keeps the thermal width; what is hardly wider cannot be told from one. */
 const thermalMargin = 1.05;
-/** Samples between which a width is real. */
+/** Level steps, and mesh steps, that a width must span to be real. */
 const leastSteps = 2;
 /** Bars by which a peak must stand out. */
 const leastBars = 2;
@@ -57,7 +59,7 @@ export function resolvedWidth(stepEv: number, { temperatureK, meshEv }: Resoluti
   const limits = [
     { widthEv: leastSteps * stepEv, by: "the step between levels" },
     { widthEv: thermalMargin * thermalWidth * boltzmannEvPerK * temperatureK, by: `${temperatureK} K` },
-    { widthEv: meshEv, by: "the mesh" },
+    { widthEv: leastSteps * meshEv, by: "the mesh" },
   ];
   return limits.reduce((most, limit) => (limit.widthEv > most.widthEv ? limit : most));
 }
@@ -163,7 +165,7 @@ function unresolvedWhy(
   const limit = resolvedWidth(stepEv, resolution);
   if (widthEv < limit.widthEv) return `narrower than ${limit.by} resolves`;
   if (!Number.isFinite(error)) return "no error bar is known here";
-  return prominence < leastBars * error ? "does not stand out by two error bars" : "";
+  return prominence < leastBars * resolution.barFactor * error ? "does not stand out by two error bars" : "";
 }
 
 /** The ends of the window at which |value| is larger than at every inner peak and still grows outward. */

@@ -18,6 +18,9 @@ const peaksShown = 4;
 
 const roomK = 300;
 
+/** Electrons per cell that do not move the level out of a gap. */
+const hardlyAny = 1e-5;
+
 /** A level to a tenth of a meV, with its sign. */
 const levelWords = (levelEv: number): string => {
   const text = levelEv.toFixed(4);
@@ -32,10 +35,11 @@ const told = ({ value, error }: DopedValue): string =>
   value === null ? "outside" : withError(value, error ?? Number.NaN);
 
 /** The doping as it is usual for this material: carriers by name where they are few. */
-const amountWords = (result: DopeResult, peak: DopePeak): string =>
-  result.carriers === "few" && peak.doping.per_cell !== 0
-    ? carrierWords(peak.doping, result)
-    : dopingWords(peak.doping, result);
+function amountWords(result: DopeResult, { doping }: DopePeak): string {
+  if (result.carriers === "many" || doping.per_cell === 0) return dopingWords(doping, result);
+  const carriers = carrierWords(doping, result);
+  return Math.abs(doping.per_cell) < hardlyAny ? `hardly any doping (${carriers})` : carriers;
+}
 
 function robustWords(peak: DopePeak, unit: string): string {
   const heights = peak.at_temperatures.map((at) => `${told(at)} at ${plain(at.temperature_K)} K`);

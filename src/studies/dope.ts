@@ -160,7 +160,9 @@ export function readDope(curves: CurvesResult, options: ReadingOptions, meshEv: 
     substitute: [...substitute],
     sites_per_cell: sites,
     responses: curves.responses.map((response) => responseResult(doped, response, asked, { meshEv, prominence })),
-    dopings: askedDopings(doped, options, held).map((perCell) => dopedPoint(doped, perCell, all)),
+    dopings: askedDopings(doped, options, held).map((perCell) =>
+      dopedPoint(doped, perCell, doping === undefined ? asked : all),
+    ),
     sampling: curves.sampling,
     notes: notesOf(curves, robust),
   };

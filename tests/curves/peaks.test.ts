@@ -4,7 +4,7 @@ import { describe, expect, it } from "vitest";
 import { findPeaks, growsBeyond, type PeakCurve, resolvedWidth } from "../../src/curves/peaks.js";
 
 const kB = 8.617333262e-5;
-const cold = { temperatureK: 0, meshEv: 0, leastProminence: 0 };
+const cold = { temperatureK: 0, meshEv: 0, barFactor: 1, leastProminence: 0 };
 
 function sampled(f: (e: number) => number, bar = 0.001, from = -1, to = 1, points = 401): PeakCurve {
   const levelsEv = Array.from({ length: points }, (_, i) => from + ((to - from) * i) / (points - 1));
@@ -144,8 +144,8 @@ describe("what is no peak, or not a sure one", () => {
     ).toContain("the mesh");
     expect(why(sampled((e) => 10 + 0.1 * lorentz(e, 0, 0.05), 0.06))).toContain("two error bars");
     expect(why(sampled((e) => lorentz(e, 0, 0.05), Number.NaN))).toContain("no error bar");
-    expect(resolvedWidth(0.01, { temperatureK: 0, meshEv: 0.3, leastProminence: 0 })).toEqual({
-      widthEv: 0.3,
+    expect(resolvedWidth(0.01, { ...cold, meshEv: 0.3 })).toEqual({
+      widthEv: 0.6,
       by: "the mesh",
     });
   });

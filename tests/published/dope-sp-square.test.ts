@@ -33,7 +33,7 @@ describe("peaks of the square layer, refined from 32^2", () => {
     ])
       expectWithin(truth[level.findIndex((each) => Math.abs(each - mu) < 1e-9)], exact, 6e-5, `truth at ${mu}`);
     // The definition of a peak is tested on closed forms (tests/curves/peaks.test.ts); places and heights here are those of the dense curve.
-    const resolution = { temperatureK: kelvin, meshEv: 0, leastProminence: 0.02 };
+    const resolution = { temperatureK: kelvin, meshEv: 0, barFactor: 1, leastProminence: 0.02 };
     const summits = findPeaks({ levelsEv: level, value: truth, error: level.map(() => 1e-4) }, resolution);
     expect(summits).toHaveLength(3);
 
