@@ -44,26 +44,46 @@ function runningSums({ axis, columns, base, nodes }: NodeWeights): Float64Array 
 /** A curve of every column: values[level * columns + column]. */
 export type CurveSampler = (levelEv: number, temperatureK: number, out: Float64Array) => void;
 
-/**
- * Occupied weight at any level and temperature: sum_i weight_i f(E_i - mu). At T = 0 a node counts by the part of its hat
- * (one step to either side) that lies below the level.
- */
+/** Nodes that a level splits: all before `first` count fully, those up to `last` by `part`, none beyond. */
+interface SplitNodes {
+  readonly first: number;
+  readonly last: number;
+  readonly part: (node: number) => number;
+}
+
+/** At T = 0 a node counts by the part of its hat (one step to either side) that lies below the level. */
+function splitNodes(axis: NodeAxis, levelEv: number, temperatureK: number): SplitNodes {
+  const scale = temperatureK > 0 ? temperatureK * boltzmannEvPerK : 0;
+  const centre = (levelEv - axis.startEv) / axis.stepEv;
+  const reach = scale > 0 ? (scale * fermiReach) / axis.stepEv : 1;
+  return {
+    first: Math.min(axis.count, Math.max(0, Math.ceil(centre - reach))),
+    last: Math.min(axis.count - 1, Math.floor(centre + reach)),
+    part: (node) => (scale > 0 ? fermi(((node - centre) * axis.stepEv) / scale) : hatBelow(centre - node)),
+  };
+}
+
+/** Occupied weight at any level and temperature: sum_i weight_i f(E_i - mu); of a split hat at T = 0 the part below. */
 export function occupiedWeight(weights: NodeWeights): CurveSampler {
   const { axis, columns, nodes } = weights;
   const sums = runningSums(weights);
   return (levelEv, temperatureK, out) => {
-    const scale = temperatureK > 0 ? temperatureK * boltzmannEvPerK : 0;
-    const centre = (levelEv - axis.startEv) / axis.stepEv;
-    const reach = scale > 0 ? (scale * fermiReach) / axis.stepEv : 1;
-    const first = Math.min(axis.count, Math.max(0, Math.ceil(centre - reach)));
-    const last = Math.min(axis.count - 1, Math.floor(centre + reach));
+    const { first, last, part } = splitNodes(axis, levelEv, temperatureK);
     for (let c = 0; c < columns; c++) out[c] = sums[first * columns + c];
     for (let i = first; i <= last; i++) {
-      const offset = i - centre;
-      const part = scale > 0 ? fermi((offset * axis.stepEv) / scale) : hatBelow(-offset);
-      for (let c = 0, at = i * columns; c < columns; c++, at++) out[c] += part * nodes[at];
+      const filled = part(i);
+      for (let c = 0, at = i * columns; c < columns; c++, at++) out[c] += filled * nodes[at];
     }
   };
+}
+
+/** What every node's weight counts for in `occupiedWeight` at one level and temperature, 0 to 1; the base counts fully. */
+export function occupiedParts(axis: NodeAxis, levelEv: number, temperatureK: number): Float64Array {
+  const { first, last, part } = splitNodes(axis, levelEv, temperatureK);
+  const parts = new Float64Array(axis.count);
+  parts.fill(1, 0, first);
+  for (let i = first; i <= last; i++) parts[i] = part(i);
+  return parts;
 }
 
 /** A way to read curves off weights on nodes: linear in the weights. */
@@ -71,8 +91,8 @@ export interface Reading {
   readonly read: (weights: NodeWeights) => CurveSampler;
   /** Factor for what was read at `warmK` to stand for `askedK`, where weights are too rough to be read colder. */
   readonly warmed: (askedK: number, warmK: number) => number;
-  /** The most by which the reading can err where the occupied weight is unsure by 1 at every level. */
-  readonly gain: (temperatureK: number) => number;
+  /** The most by which the reading can err where the occupied weight is unsure by 1 at every level, and smooth over `detailEv`. */
+  readonly gain: (temperatureK: number, detailEv: number) => number;
 }
 
 /** Reads occupied weight: the curves of responses. */
@@ -83,7 +103,8 @@ export const densityReading = (resolutionEv: number): Reading => ({
   read: (weights) => weightDensity(weights, resolutionEv),
   warmed: () => 1,
   // The integral of the magnitude of the kernel's slope: twice the height of -df/dE, or of the hat.
-  gain: (temperatureK) => (temperatureK > 0 ? 1 / (2 * temperatureK * boltzmannEvPerK) : 2 / resolutionEv),
+  gain: (temperatureK, detailEv) =>
+    1 / Math.max(detailEv, temperatureK > 0 ? 2 * temperatureK * boltzmannEvPerK : resolutionEv / 2),
 });
 
 /** Part of a unit hat centred at 0 that lies below x, -1 <= x <= 1. */

@@ -29,6 +29,9 @@ const leastDefect = 0.01;
 /** Levels over which an error is averaged: a difference that passes through zero does not mean certainty. */
 const neighbouringLevels = 9;
 
+/** What is let pass, or wrong with a model, runs smoothly over this part of the energy that the mesh resolves. */
+const passedDetail = 1 / 4;
+
 /** What the refinement left behind, besides its sections. */
 export interface RefinedFacts extends SpectraFacts {
   /** Energy that the mesh resolves, eV; see engine/mesh-step. */
@@ -121,10 +124,10 @@ function averaged(
 }
 
 /** Families that were let pass disagree by amounts of random sign: the root of the sum of their squares. */
-function samplingSquares(sections: Sections, { axis, columns, reading }: HowRead): Squares {
+function samplingSquares(sections: Sections, { axis, columns, reading }: HowRead, detailEv: number): Squares {
   const squares = sections["refine.square"];
   return (levelEv, temperatureK, out) => {
-    const gain = (likeness * reading.gain(temperatureK)) ** 2;
+    const gain = (likeness * reading.gain(temperatureK, detailEv)) ** 2;
     const position = Math.min(axis.count - 1.001, Math.max(0, (levelEv - axis.startEv) / axis.stepEv));
     const node = Math.floor(position);
     const part = position - node;
@@ -195,13 +198,13 @@ export function refinedErrors(
   const { axis, columns } = facts;
   const warmth = (temperatureK: number): number => 2 * boltzmannEvPerK * temperatureK;
   const sampling = averaged(
-    samplingSquares(sections, { axis: indicatorNodes(axis), columns, reading }),
+    samplingSquares(sections, { axis: indicatorNodes(axis), columns, reading }, facts.regularEv * passedDetail),
     columns,
     axis,
     warmth,
   );
   const model = averaged(modelSquares(sections, facts, reading), columns, axis, (t) =>
-    Math.max(facts.regularEv / 4, warmth(t)),
+    Math.max(facts.regularEv * passedDetail, warmth(t)),
   );
   widenNearTop(model, curves, facts);
   return { sampling, model };

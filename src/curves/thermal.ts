@@ -41,5 +41,6 @@ const largestPart = 2 * Math.LN2;
 export const thermalReading: Reading = {
   read: thermalWeight,
   warmed: (askedK, warmK) => (warmK > 0 ? askedK / warmK : 1),
-  gain: (temperatureK) => (temperatureK > 0 ? largestPart : 0),
+  gain: (temperatureK, detailEv) =>
+    Math.min(largestPart, ((Math.PI ** 2 / 3) * temperatureK * boltzmannEvPerK) / Math.max(detailEv, Number.MIN_VALUE)),
 };

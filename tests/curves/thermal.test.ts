@@ -97,8 +97,11 @@ describe("Mott integral", () => {
     for (const temperature of temperatures.slice(1))
       for (const level of [-0.3, 0.2])
         expect(Math.abs(read(weights, level, temperature))).toBeLessThan(
-          largest * thermalReading.gain(temperature) * (1 + 1e-3),
+          largest * thermalReading.gain(temperature, 0) * (1 + 1e-3),
         );
-    expect(thermalReading.gain(300)).toBeCloseTo(2 * Math.log(2), 14);
+    expect(thermalReading.gain(300, 0)).toBeCloseTo(2 * Math.log(2), 14);
+    // Where the error is smooth, Sommerfeld's form bounds it: (pi^2/3) kT over the energy on which it changes by itself.
+    expect(thermalReading.gain(300, 1)).toBeCloseTo((Math.PI ** 2 / 3) * 300 * boltzmannEvPerK, 14);
+    expect(thermalReading.gain(0, 1)).toBe(0);
   });
 });
