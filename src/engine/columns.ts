@@ -31,6 +31,19 @@ export function fillColumns(
   out[columns.length + drude.length] = 1;
 }
 
+/** The parts of pairs of bands in every response, out[response * pairs + pair], from those in every product. */
+export function fillPairColumns(
+  columns: readonly ResponseColumn[],
+  products: Float64Array,
+  pairs: number,
+  out: Float64Array,
+): void {
+  out.fill(0, 0, columns.length * pairs);
+  for (const [c, { terms }] of columns.entries())
+    for (const { product, weight } of terms)
+      for (let pair = 0; pair < pairs; pair++) out[c * pairs + pair] += weight * products[product * pairs + pair];
+}
+
 /**
  * The same columns from fewer products, for kernels that take sums of currents: the products of a column that share their field
  * become one.

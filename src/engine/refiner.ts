@@ -10,7 +10,7 @@ import { type BoxSpectrum, createBoxSpectrum } from "./box-spectrum.js";
 import { columnCount } from "./columns.js";
 import type { RefineJob } from "./job.js";
 import type { Links } from "./links.js";
-import { type BandSample, type LocalSampler, newSample } from "./local-sampler.js";
+import type { BandSample, LocalSampler } from "./local-sampler.js";
 import { spanWidths } from "./pass.js";
 
 /** Depths that are counted apart. */
@@ -33,6 +33,18 @@ export interface RefinerPlan {
   /** Where its main spectrum is kept. */
   readonly axis: NodeAxis;
   readonly sampler: LocalSampler;
+  /** Sees everything that is added, as it is added. */
+  readonly watch?: RefineWatch;
+}
+
+/** One who sees what a refiner adds to its spectra. */
+export interface RefineWatch {
+  /** A family of boxes that is final; see depositFamily. */
+  family(family: Family<BandSample>, resolved: boolean): void;
+  /** The stored point, on which `calls` neighbours call: its truth. */
+  truth(sample: BandSample, calls: number): void;
+  /** What the model says of a neighbour, to be taken off `calls` times. */
+  model(sample: BandSample, calls: number): void;
 }
 
 export interface Refiner {
@@ -55,22 +67,24 @@ export function createRefiner(plan: RefinerPlan): Refiner {
   const tree = createTree<BandSample>({
     dimension: facts.periodic,
     depthLimit: job.depthLimit,
-    create: () => newSample(facts, columns),
+    create: sampler.newSample,
     evaluate: (sample) => sampler.evaluate(sample, edges),
     disagrees: judge.disagrees,
     accept: (family, resolved) => {
       judge.accept();
       depositFamily(family, resolved, weight, main);
+      plan.watch?.family(family, resolved);
     },
   });
-  const root = newSample(facts, columns);
-  const other = newSample(facts, columns);
+  const root = sampler.newSample();
+  const other = sampler.newSample();
   const steps = neighbourSteps(facts.periodic);
   // (1/24) sum over cells and neighbours of (stored truth - model's guess): what a point serves as truth is gathered where it stands.
   const serve = (links: Links): void => {
     if (links.truth === 0) return;
     sampler.evaluateRegular(root, edges);
     defect.add(root, 0, (weight * links.truth) / 24);
+    plan.watch?.truth(root, links.truth);
   };
   return {
     serve(links) {
@@ -92,6 +106,7 @@ export function createRefiner(plan: RefinerPlan): Refiner {
         other.centre.set(t);
         sampler.evaluateRegular(other, edges);
         defect.add(other, 0, (-weight * links.models[i]) / 24);
+        plan.watch?.model(other, links.models[i]);
       }
       tally[counters.defectSamples] += steps.length;
     },

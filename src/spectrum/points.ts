@@ -1,5 +1,5 @@
 // points.ts: deposits of the plain mesh sum: exact steps at the asked levels, and exact Fermi factors through anterpolation.
-import type { LevelAxis } from "./axis.js";
+import type { LevelAxis, NodeAxis } from "./axis.js";
 
 /** Nodes over which a point's weight is anterpolated; with 8 nodes per kT a Fermi factor is reproduced to 1e-12. */
 const stencil = 12;
@@ -78,5 +78,24 @@ export function createPointDeposit(store: PointStore): PointDeposit {
     while (level < levelsEv.length && energyEv > levelsEv[level]) level++;
     if (level >= levelsEv.length) return;
     for (let c = 0; c < columns; c++) steps[level * columns + c] += values[c];
+  };
+}
+
+/**
+ * The other way round: what weight deposited at an energy counts for where every node counts for parts[node] and the base for 1, so that the sum of
+ * a deposit's reading is the reading of the sum.
+ */
+export function createPointReader(axis: NodeAxis, parts: Float64Array): (energyEv: number) => number {
+  const weights = new Float64Array(stencil);
+  const { startEv, stepEv, count } = axis;
+  return (energyEv) => {
+    const position = (energyEv - startEv) / stepEv;
+    const node = Math.floor(position);
+    if (node >= count - stencil / 2) return 0;
+    if (node < stencil / 2 - 1) return 1;
+    lagrange(position - node, weights);
+    let sum = 0;
+    for (let j = 0, at = node - stencil / 2 + 1; j < stencil; j++, at++) sum += weights[j] * parts[at];
+    return sum;
   };
 }
