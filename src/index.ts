@@ -1,6 +1,6 @@
 // index.ts: the public API: what a program that uses tidegauge as a library may import.
 export { Fault, type FaultKind, isFault } from "./base/errors.js";
-export type { CurvesResult, ResponseCurve, Table } from "./curves/result.js";
+export type { CompanionCurve, CurvesResult, DrudeCurve, ResponseCurve, Table } from "./curves/result.js";
 export type { RunOptions } from "./engine/run.js";
 export type { Block, BlockReader, GridFacts, MatrixBlock, MomentFacts, Triple, Want } from "./grid/grid.js";
 export { type Grid, openGrid } from "./grid/open.js";
@@ -18,5 +18,11 @@ export { curvesSvg } from "./report/svg/curves.js";
 export { curvesText } from "./report/text.js";
 export { buildSample, sampleCatalogue } from "./samples/catalogue.js";
 export { writeSample } from "./samples/write.js";
+export { type AngleOptions, angle, angleOptions } from "./studies/angle.js";
+export type { AngleResult } from "./studies/angle-result.js";
+export { type DopeOptions, dope, dopeOptions } from "./studies/dope.js";
+export type { DopeResult } from "./studies/dope-result.js";
 export { inspect, inspectOptions } from "./studies/inspect.js";
+export { type SeriesOptions, series, seriesOptions } from "./studies/series.js";
+export type { SeriesResult } from "./studies/series-result.js";
 export { type SweepOptions, sweep, sweepOptions } from "./studies/sweep.js";
