@@ -80,8 +80,21 @@ function headline(result: DopeResult, response: DopeResponse): string {
         `(${signed(end.doping_per_cell, 3)} electrons per cell), and may grow beyond it: a wider --${end.end === "low" ? "from" : "to"} shows.`;
   const [peak] = response.peaks.filter((each) => each.temperature_K === temperatureK);
   if (peak === undefined)
-    return `At ${plain(temperatureK)} K ${name} has no peak inside the window. ${beyond || "It is zero, or flat, throughout."}`;
+    return `At ${plain(temperatureK)} K ${name} has no peak inside the window. ${beyond || peaklessWords(response, temperatureK)}`;
   return `${peakWords(result, response, peak)}${beyond === "" ? "" : ` ${beyond}`}`;
+}
+
+/** Magnitudes below this, in any unit on offer, are round-off. */
+const roundOff = 1e-7;
+
+/** Why a response that does not grow towards an end has no peak. */
+function peaklessWords({ largest, unit }: DopeResponse, temperatureK: number): string {
+  const most = largest.find(({ temperature_K }) => temperature_K === temperatureK);
+  if (most === undefined || !(Math.abs(most.value) > roundOff)) return "It is zero throughout.";
+  return (
+    `Its largest magnitude, ${withError(most.value, most.error)} ${cleanLine(unit)} at ${plain(most.level_eV, 4)} eV ` +
+    `(${signed(most.doping_per_cell, 3)} electrons per cell), stands out by too little (see --prominence).`
+  );
 }
 
 /** The peaks that the tables show. */

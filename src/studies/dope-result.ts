@@ -52,6 +52,8 @@ export interface DopeResponse {
   unit: string;
   /** At each temperature asked, in the order of |value|, resolved ones first. */
   peaks: DopePeak[];
+  /** Largest |value| of the window at each temperature asked, peak or not. */
+  largest: { temperature_K: number; level_eV: number; value: number; error: number; doping_per_cell: number }[];
   /** Ends of the window at which the response is largest and still grows, by temperature. */
   grows_beyond: {
     temperature_K: number;

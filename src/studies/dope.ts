@@ -88,23 +88,32 @@ function responseResult(
   resolution: { meshEv: number; prominence: number },
 ): DopeResponse {
   const { curves } = doped;
-  const ends = temperatures.flatMap((t) => {
-    return growsBeyond(peakCurve(curves, response, t)).map((end) => {
-      const at = end === "low" ? 0 : curves.level_eV.length - 1;
-      return {
-        temperature_K: curves.temperature_K[t],
-        end,
-        level_eV: curves.level_eV[at],
-        value: response.value[t][at],
-        error: response.error[t][at],
-        doping_per_cell: curves.doping_per_cell[t][at],
-      };
-    });
+  const readAt = (t: number, at: number) => ({
+    temperature_K: curves.temperature_K[t],
+    level_eV: curves.level_eV[at],
+    value: response.value[t][at],
+    error: response.error[t][at],
+    doping_per_cell: curves.doping_per_cell[t][at],
+  });
+  const ends = temperatures.flatMap((t) =>
+    growsBeyond(peakCurve(curves, response, t)).map((end) => ({
+      end,
+      ...readAt(t, end === "low" ? 0 : curves.level_eV.length - 1),
+    })),
+  );
+  const largest = temperatures.map((t) => {
+    const { value } = peakCurve(curves, response, t);
+    const size = (at: number): number => Math.abs(value[at]) || 0;
+    return readAt(
+      t,
+      value.reduce((best, _, at) => (size(at) > size(best) ? at : best), 0),
+    );
   });
   return {
     name: response.name,
     unit: response.unit,
     peaks: temperatures.flatMap((t) => peaksOf(doped, response, t, resolution)),
+    largest,
     grows_beyond: ends,
   };
 }

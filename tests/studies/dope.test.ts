@@ -124,7 +124,7 @@ describe("reports", () => {
       /no peak inside the window. It is largest at the high end/,
     );
     const nothing = metal(() => 0);
-    expect(dopeText(read({}, nothing))).toContain("It is zero, or flat, throughout");
+    expect(dopeText(read({}, nothing))).toContain("It is zero throughout");
   });
 
   it("draw and tabulate the same, twice the same", () => {
