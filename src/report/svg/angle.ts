@@ -16,8 +16,10 @@ const angleWords = (name: string): string => quantityWords(name).replace(/conduc
 
 /** Angle of one response against temperature. */
 function anglePanel({ name, rows }: AngleResponse, colour: string): Panel {
-  const traces = [{ colour, value: rows.map((row) => row.angle), error: rows.map((row) => row.angle_error) }];
-  return { words: angleWords(name), name, unit: "a plain number", heightPx: anglePanelPx, traces };
+  const percent = (part: number): number => 100 * part;
+  const value = rows.map((row) => percent(row.angle));
+  const traces = [{ colour, value, error: rows.map((row) => percent(row.angle_error)) }];
+  return { words: angleWords(name), name, unit: "%", heightPx: anglePanelPx, traces };
 }
 
 /** The level curve of one response, with room for the measured values. */
