@@ -34,6 +34,7 @@ const methodWords = {
 
 /** What help says of the defaults and methods of a study; a sweep's own where nothing is given. */
 interface StudyWords {
+  readonly response: string;
   readonly from: string;
   readonly to: string;
   readonly points: string;
@@ -43,6 +44,7 @@ interface StudyWords {
 }
 
 const sweepWords: StudyWords = {
+  response: "charge:xy and the Hall response of every moment",
   from: "-1",
   to: "1",
   points: "201",
@@ -55,7 +57,7 @@ const sweepWords: StudyWords = {
 export function addSweepOptions(command: Command, study: Partial<StudyWords> = {}): Command {
   const words = { ...sweepWords, ...study };
   return command
-    .option("--response <NAME...>", "what to compute (default charge:xy and the Hall response of every moment)")
+    .option("--response <NAME...>", `what to compute (default ${words.response})`)
     .option("--from <EV>", `lowest level, relative to the reference level (default ${words.from})`)
     .option("--to <EV>", `highest level (default ${words.to})`)
     .option("--points <N>", `number of levels (default ${words.points})`)

@@ -1,5 +1,12 @@
 // angle-text.ts: what does `angle` say in words and tables, on a terminal?
-import type { AngleResponse, AngleResult, AngleRow, MeasuredRow, SeriesResult } from "../studies/angle-result.js";
+import type {
+  AngleResponse,
+  AngleResult,
+  AngleRow,
+  MeasuredRow,
+  ScatteringRow,
+  SeriesResult,
+} from "../studies/angle-result.js";
 import { cleanLine } from "./clean.js";
 import { plain, withError } from "./numbers.js";
 import { type Column, table, wrapped } from "./table.js";
@@ -38,15 +45,33 @@ function headline(result: AngleResult, response: AngleResponse): string {
   );
 }
 
+/** Is there a Fermi surface at the level at all, as far as the bar can tell? */
+const conducts = ({ drude, drude_error: error }: ScatteringRow): boolean =>
+  drude > 2 * error || (drude > 0 && !Number.isFinite(error));
+
+const tauWords = (row: ScatteringRow): string => (conducts(row) ? withError(row.tau_fs, row.tau_error_fs) : "n/a");
+
+/** Below this mean free path, a few lattice constants, bands are too blurred for the clean limit. */
+const shortestPathNm = 1;
+
 function scatteringWords(result: AngleResult): string {
   const [first] = result.scattering;
   const row = result.scattering.reduce(
     (a, b) => (Math.abs(b.temperature_K - 300) < Math.abs(a.temperature_K - 300) ? b : a),
     first,
   );
+  if (!conducts(row))
+    return (
+      "Caution: the Drude weight is not told apart from zero: the level lies in a gap or at its edge, the resistivity says nothing of scattering in " +
+      "these bands, and the angle means little."
+    );
+  const caution =
+    row.mean_free_path_nm < shortestPathNm
+      ? " Caution: that is a few lattice constants at most; the intrinsic value is one of the clean limit, and so dirty a metal may fall below it."
+      : "";
   return (
     `By the Drude weight of the same pass, ${plain(row.drude, 4)} ${result.resistivity_unit === "ohm m" ? "(S/m)/s" : "S/s"}, carriers scatter every ` +
-    `${withError(row.tau_fs, row.tau_error_fs)} fs (hbar/tau ${plain(1000 * row.hbar_over_tau_eV, 3)} meV, mean free path about ${plain(row.mean_free_path_nm, 2)} nm).`
+    `${withError(row.tau_fs, row.tau_error_fs)} fs (hbar/tau ${plain(1000 * row.hbar_over_tau_eV, 3)} meV, mean free path about ${plain(row.mean_free_path_nm, 2)} nm).${caution}`
   );
 }
 
@@ -59,7 +84,7 @@ function angleTable(result: AngleResult): string {
       resistivityWords(result, row.resistivity, row.resistivity_error),
       withError(row.conductivity, row.conductivity_error),
       withError(row.angle, row.angle_error),
-      withError(result.scattering[i].tau_fs, result.scattering[i].tau_error_fs),
+      tauWords(result.scattering[i]),
     ]),
   );
   return table(rows, [

@@ -140,6 +140,17 @@ describe("of a layer", () => {
   });
 });
 
+describe("of an insulator", () => {
+  it("says that a resistivity tells nothing of scattering in a gap", async () => {
+    const grid = join(folder, "insulator");
+    await runInProcess(["sample", "haldane", "--mesh", "12", "12", "--out", grid, "--quiet"]);
+    const { status, stdout } = await run(grid, "--resistivity", "30 kohm", "--response", "charge:xy", "--points", "5");
+    expect(status).toBe(0);
+    expect(stdout).toContain("Caution: the Drude weight is not told apart from zero");
+    expect(stdout).toMatch(/charge:xy .* n\/a$/m);
+  });
+});
+
 describe("wrong usage and data", () => {
   it("end with two lines and status 2 or 3, before anything is computed", async () => {
     const bad = file("bad.csv", "temperature_K,resistivity [uohm cm]\n10,1\n300,x\n");

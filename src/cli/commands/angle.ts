@@ -39,6 +39,7 @@ export function register(program: Command, context: Context): void {
       .option("--measured <CSV>", "measured conductivities or angles to compare with; see below")
       .option("--shift <EV>", "how far the level may be off, either way (default 0.2)"),
     {
+      response: "the Hall response of every moment",
       from: "minus --shift",
       to: "--shift",
       points: "81",
