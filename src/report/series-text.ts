@@ -65,9 +65,11 @@ function peakWords(result: SeriesResult, response: SeriesResponse): string {
     return `Its highest peak, ${told(first)} at ${place(first)}, is there at ${plain(first.tag)} only.`;
   const lost =
     present.length < result.members.length ? `, present in ${present.length} of ${result.members.length} grids,` : "";
+  const doubtful = present.filter(({ resolved }) => !resolved).length;
+  const unsure = doubtful === 0 ? "" : ` It is unresolved in ${doubtful} of ${present.length} grids.`;
   return (
     `Its highest peak${lost} goes ${changeWords(first, last, cleanLine(response.unit))}, and moves from ${place(first)} to ` +
-    `${place(last)} of the grid's own neutral crystal.`
+    `${place(last)}, each from its grid's own neutral crystal.${unsure}`
   );
 }
 

@@ -1,4 +1,6 @@
 // series.test.ts: are grids ordered by their tag, peaks followed to the nearest doping, and wrong families refused by name?
+import { readFileSync } from "node:fs";
+import { join } from "node:path";
 import { describe, expect, it } from "vitest";
 import { isFault } from "../../src/base/errors.js";
 import { followPeaks } from "../../src/studies/series-peaks.js";
@@ -89,6 +91,9 @@ describe("the command", () => {
     );
     expect(told.status).toBe(0);
     expect(told.stdout).toMatch(/2 grids ordered by ezz: -0.005/);
+    const csv = readFileSync(join(out, "series.csv"), "utf8").trimEnd().split("\n");
+    expect(new Set(csv.map((row) => row.split(",").length)).size).toBe(1);
+    expect(readFileSync(join(out, "series.svg"), "utf8")).toContain("2 grids along ezz");
     const doubled = await runCommand(["series", names[0], await sampled("luttinger", { mesh, set: { ezz: 0.005 } })]);
     expect([doubled.status, doubled.stdout]).toEqual([2, ""]);
   });

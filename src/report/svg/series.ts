@@ -51,7 +51,11 @@ function coursePanel(result: SeriesResult, course: Course, response: SeriesRespo
       return point ? (of(point) ?? Number.NaN) : Number.NaN;
     });
   const traces = course.points.map(
-    (points, t): Trace => ({ colour: colours[t], value: numbers(points, ({ value }) => value) }),
+    (points, t): Trace => ({
+      colour: colours[t],
+      value: numbers(points, ({ value }) => value),
+      error: numbers(points, ({ error }) => error),
+    }),
   );
   const dots = course.points.flatMap((points, t) =>
     points.flatMap((point): Dot[] => {
