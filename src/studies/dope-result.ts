@@ -91,7 +91,7 @@ export interface DopeResult {
   density_unit: "per_cm3" | "per_cm2";
   /** Density of one electron per cell. */
   density_of_one: number;
-  /** Smallest and largest doping in the window at every temperature, electrons per cell. */
+  /** Smallest and largest doping in the window at every temperature asked, electrons per cell. */
   doping_window_per_cell: [least: number, most: number];
   substitute: number[];
   sites_per_cell: number;

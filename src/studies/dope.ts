@@ -151,7 +151,7 @@ export function readDope(curves: CurvesResult, options: ReadingOptions, meshEv: 
   );
   const robust = indicesOf(curves, robustnessK);
   const all = [...new Set([...asked, ...robust])].sort((a, b) => a - b);
-  const held = heldByAll(doped, all);
+  const held = heldByAll(doped, asked);
   return {
     format: "tidegauge.dope/1",
     version: productVersion,

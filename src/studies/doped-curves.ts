@@ -160,6 +160,10 @@ export function roundDopings(
   return [...round.map((each) => -each).reverse(), ...round].filter((each) => each >= least && each <= most);
 }
 
+/** Three digits, powers of ten for concentrations. */
+const short = (value: number): string =>
+  Math.abs(value) < 1e6 ? String(Number(value.toPrecision(3))) : value.toExponential(2).replace(/\.?0*e\+/, "e");
+
 /** The dopings asked for, in electrons per cell; none asked for and carriers few: round concentrations inside the window. */
 export function askedDopings(
   { curves, scale, few }: Doped,
@@ -175,12 +179,11 @@ export function askedDopings(
   checkDopingUnit(dopingUnit, curves.doping_density_unit === "per_cm3" ? 3 : 2);
   for (const value of doping) {
     if (inCell(value) >= least && inCell(value) <= most) continue;
-    const told = (perCell: number): string =>
-      Number((dopingUnit === "per_cell" ? perCell : perCell * scale.densityOfOne).toPrecision(3)).toString();
+    const told = (perCell: number): string => short(dopingUnit === "per_cell" ? perCell : perCell * scale.densityOfOne);
     const [from, to] = [curves.level_eV[0], curves.level_eV[curves.level_eV.length - 1]];
     throw usageFault(
-      `${where}--doping ${value} ${dopingUnit}: the window from ${from} to ${to} eV holds only ${told(least)} to ${told(most)} at every temperature`,
-      `Widen it with ${inCell(value) < least ? `--from below ${from}` : `--to above ${to}`}, or ask for a smaller doping.`,
+      `${where}--doping ${short(value)} ${dopingUnit}: the window from ${short(from)} to ${short(to)} eV holds only ${told(least)} to ${told(most)} at every temperature asked`,
+      `Widen it with ${inCell(value) < least ? `--from below ${short(from)}` : `--to above ${short(to)}`}, or ask for a doping inside.`,
     );
   }
   return doping.map(inCell);
