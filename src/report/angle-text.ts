@@ -45,9 +45,12 @@ function headline(result: AngleResult, response: AngleResponse): string {
   );
 }
 
+/** No metal scatters more seldom, 1 ns: a longer time means that the level has next to no carriers of its own. */
+const longestTauFs = 1e6;
+
 /** Is there a Fermi surface at the level at all, as far as the bar can tell? */
-const conducts = ({ drude, drude_error: error }: ScatteringRow): boolean =>
-  drude > 2 * error || (drude > 0 && !Number.isFinite(error));
+const conducts = ({ drude, drude_error: error, tau_fs: tau }: ScatteringRow): boolean =>
+  drude > 2 * (Number.isFinite(error) ? error : 0) && tau < longestTauFs;
 
 const tauWords = (row: ScatteringRow): string => (conducts(row) ? withError(row.tau_fs, row.tau_error_fs) : "n/a");
 
@@ -62,7 +65,7 @@ function scatteringWords(result: AngleResult): string {
   );
   if (!conducts(row))
     return (
-      "Caution: the Drude weight is not told apart from zero: the level lies in a gap or at its edge, the resistivity says nothing of scattering in " +
+      "Caution: the Drude weight is next to nothing: the level lies in a gap or at its edge, the resistivity says nothing of scattering in " +
       "these bands, and the angle means little."
     );
   const caution =
