@@ -3,9 +3,8 @@ import { boltzmannEvPerK } from "../base/constants.js";
 import type { HessianKind } from "../grid/grid.js";
 import { coarseNodes, indicatorNodes, type LevelAxis, type NodeAxis } from "../spectrum/axis.js";
 import type { Sections } from "../spectrum/sections.js";
-import { type ColumnCurves, columnTable, resolutionOf, type SpectraFacts } from "./assemble.js";
-import { type CurveSampler, densityReading, occupiedReading, type Reading, sampleCurves } from "./occupation.js";
-import type { Table } from "./result.js";
+import type { ColumnCurves, SpectraFacts } from "./assemble.js";
+import { type CurveSampler, occupiedReading, type Reading, sampleCurves } from "./occupation.js";
 
 /**
  * Once the neighbours have corrected the local models, their error falls like the fourth power of a fine mesh step; on the meshes
@@ -49,7 +48,7 @@ export interface RefinedErrors {
 }
 
 /** The defect is known at stored points alone: below this part of the energy that the mesh resolves it is not followed. */
-const defectDetail = 1 / 12;
+export const defectDetail = 1 / 12;
 
 /**
  * A reading of a refined mesh: the trees of cells at the asked temperature, and the neighbour defect at no less than the
@@ -90,12 +89,6 @@ export function refinedCurves(
     axis,
     columns,
   );
-}
-
-/** States per eV and cell, [temperature][level]: the slope of the electrons of `refinedCurves` at the resolution of the levels. */
-export function refinedStates(sections: Sections, facts: RefinedFacts): Table {
-  const densities = refinedCurves(sections, facts, densityReading(resolutionOf(facts.axis)));
-  return columnTable(densities, facts.columns - 1, facts.electronsPerBand);
 }
 
 type Squares = (levelEv: number, temperatureK: number, out: Float64Array) => void;

@@ -4,6 +4,7 @@ import type { View } from "../grid/grid.js";
 import type { Grid } from "../grid/open.js";
 import type { Denominator } from "../kernel/kernel.js";
 import type { LevelAxis } from "../spectrum/axis.js";
+import type { Place } from "./place.js";
 
 export type Method = "points" | "cells" | "refine";
 
@@ -39,6 +40,19 @@ export interface DefectJob extends SweepJob {
   readonly levelsEv: readonly number[];
   /** k_B T of the occupations. */
   readonly thermalEv: number;
+}
+
+/** A sweep at one level and temperature of which the contributions are wanted one by one; a RefineJob besides where the method is `refine`. */
+export interface LocateJob extends SweepJob {
+  /** As of a RefineJob; 0 for the other methods. */
+  readonly regularEv: number;
+  /** [band]: which set of everywhere degenerate bands it belongs to; given where every task is one cell, to be looked at closely. */
+  readonly setOf?: readonly number[];
+}
+
+/** A sweep's job at one level and temperature, and places in the zone where its integrand is wanted. */
+export interface PlacesJob extends SweepJob {
+  readonly places: readonly Place[];
 }
 
 /** A run of stored k points: the unit of work, cut by the grid alone. */

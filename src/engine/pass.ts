@@ -24,7 +24,13 @@ export function spanWidths(slope: Float64Array, band: number, edges: readonly Tr
  * Widths (eV) that the bands of a set span along each edge of their cell: the root mean square of the set's block of
  * dH/dk . edge, sqrt(sum |<n|v|m>|^2 / count), which no change of basis within the set alters. A single band: |slope . edge|.
  */
-function setWidths(point: PointRef, first: number, end: number, edges: readonly Triple[], out: Float64Array): void {
+export function setWidths(
+  point: PointRef,
+  first: number,
+  end: number,
+  edges: readonly Triple[],
+  out: Float64Array,
+): void {
   const { bands } = point;
   const [x, y, z] = point.velocity as readonly MatrixRef[];
   for (let j = 0; j < edges.length; j++) {

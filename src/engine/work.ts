@@ -2,17 +2,21 @@
 import { Fault, type FaultKind, isFault } from "../base/errors.js";
 import type { Sections } from "../spectrum/sections.js";
 import { defectPass } from "./defect-pass.js";
-import type { DefectJob, RefineJob, SweepJob, Task } from "./job.js";
+import type { DefectJob, LocateJob, PlacesJob, RefineJob, SweepJob, Task } from "./job.js";
+import { locatePass } from "./locate-pass.js";
 import { meshPass } from "./pass.js";
+import { placesPass } from "./places-pass.js";
 import { refinePass } from "./refine-pass.js";
 import { surveyPass } from "./survey-pass.js";
 
-/** Kinds of work a worker knows: the methods `points` and `cells`, the two passes of `refine`, and what its models get wrong. */
+/** Kinds of work a worker knows: the methods `points` and `cells`, the two passes of `refine`, what its models get wrong, and where a value comes from. */
 export type Work =
   | { readonly kind: "mesh"; readonly job: SweepJob }
   | { readonly kind: "survey"; readonly job: SweepJob; readonly regularEv: number }
   | { readonly kind: "refine"; readonly job: RefineJob }
-  | { readonly kind: "defects"; readonly job: DefectJob };
+  | { readonly kind: "defects"; readonly job: DefectJob }
+  | { readonly kind: "locate"; readonly job: LocateJob }
+  | { readonly kind: "places"; readonly job: PlacesJob };
 
 export interface Order {
   readonly work: Work;
@@ -30,6 +34,10 @@ export function performTask({ work, task }: Order): Sections {
       return refinePass(work.job, [task]);
     case "defects":
       return defectPass(work.job, task);
+    case "locate":
+      return locatePass(work.job, task);
+    case "places":
+      return placesPass(work.job, task);
   }
 }
 

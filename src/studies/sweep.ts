@@ -6,6 +6,7 @@ import { cutTasks, type RefineJob, type Task } from "../engine/job.js";
 import { joinPatches, type ModelShare, modelShare, parentTasks, planDefects } from "../engine/patched.js";
 import { planRefinement } from "../engine/refine-plan.js";
 import { type RunOptions, runTasks } from "../engine/run.js";
+import type { Work } from "../engine/work.js";
 import { type Grid, openGrid } from "../grid/open.js";
 import { type Computed, planSweep, type SweepOptions, type SweepPlan, type SweptPart } from "./sweep-plan.js";
 import { assembleResult } from "./sweep-result.js";
@@ -16,16 +17,24 @@ export { intrinsicOnly } from "./sweep-result.js";
 /** Samples that may be spent where the user names no number. */
 const defaultSamples = (points: number): number => 200_000 + 100 * points;
 
-async function compute({ job, facts, options, regularEv }: SweepPlan, run: RunOptions): Promise<Computed> {
+/** Computes the spectra of a planned sweep; with "locate" (one level and temperature) also what every cell, band and pair adds, see engine/locator. */
+export async function computeSweep(
+  { job, facts, options, regularEv }: SweepPlan,
+  run: RunOptions,
+  wanted: "curves" | "locate" = "curves",
+): Promise<Computed> {
   const grid = openGrid(job.directory, job.view);
   const tasks = cutTasks(grid);
-  if (job.method !== "refine")
-    return { sections: await runTasks({ kind: "mesh", job }, tasks, run), refined: undefined };
+  const locate = wanted === "locate";
+  if (job.method !== "refine") {
+    const work: Work = locate ? { kind: "locate", job: { ...job, regularEv } } : { kind: "mesh", job };
+    return { sections: await runTasks(work, tasks, run), refined: undefined };
+  }
   const quiet = { workers: run.workers, signal: run.signal };
   const survey = await runTasks({ kind: "survey", job, regularEv }, tasks, quiet);
   const wish = { accuracy: options.accuracy, samples: options.samples ?? defaultSamples(facts.points) };
   const refined = planRefinement(job, facts, regularEv, survey, wish);
-  const main = joinPatches(await runTasks({ kind: "refine", job: refined }, tasks, run));
+  const main = joinPatches(await runTasks({ kind: locate ? "locate" : "refine", job: refined }, tasks, run));
   const sections = { ...survey, ...main };
   return { sections, refined, modelShare: await shareLeft(grid, refined, tasks, quiet) };
 }
@@ -49,7 +58,7 @@ export async function sweepPlanned(
   planned: SweepPlan,
   run: RunOptions,
 ): Promise<{ readonly curves: CurvesResult; readonly refined: RefineJob | undefined }> {
-  const computed = await compute(planned, run);
+  const computed = await computeSweep(planned, run);
   return { curves: assembleResult(planned, computed), refined: computed.refined };
 }
 
