@@ -163,7 +163,14 @@ export function plainBounds(evidence: Evidence): Bounds {
     evidence.reach,
   );
   const inPhase = coherence(own, telling);
-  const spread = fits.map(({ error }) => 2 * inPhase * error);
+  const alone = telling.filter(({ plain }) => plain.length > 0).slice(0, 1);
+  const spread = fits.map(({ error, rate }, level) => {
+    // A fall seen on coarse meshes is not trusted to go on faster than a metal's: near-degeneracies end it.
+    const careful = Math.min(rate, evidence.plainOrder);
+    const slower = alone.map(({ step }) => aliasGrowth(step, rate) / aliasGrowth(step, careful));
+    const sameKind = alone.map(({ step, plain }) => Math.abs(plain[0][level] - own[level]) / biasGrowth(step, careful));
+    return 2 * Math.max(inPhase * error * (slower[0] ?? 1), ...sameKind);
+  });
   const rates = fits.map(({ rate, from }) => ({ rate, from }));
   const refined = finest.refined[0];
   if (refined === undefined) return { bound: spread, rates };
