@@ -48,7 +48,7 @@ export interface RefinedErrors {
 }
 
 /** The defect is known at stored points alone: below this part of the energy that the mesh resolves it is not followed. */
-const defectDetail = 1 / 12;
+export const defectDetail = 1 / 12;
 
 /**
  * A reading of a refined mesh: the trees of cells at the asked temperature, and the neighbour defect at no less than the
