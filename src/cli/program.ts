@@ -12,6 +12,7 @@ const commands: Readonly<Record<string, () => Promise<{ readonly register: Regis
   sweep: () => import("./commands/sweep.js"),
   dope: () => import("./commands/dope.js"),
   series: () => import("./commands/series.js"),
+  locate: () => import("./commands/locate.js"),
   converge: () => import("./commands/converge.js"),
   request: () => import("./commands/request.js"),
   angle: () => import("./commands/angle.js"),

@@ -41,6 +41,8 @@ interface StudyWords {
   readonly temperature: string;
   readonly accuracy: string;
   readonly methods: readonly (keyof typeof methodWords)[];
+  /** A window of levels, or one level. */
+  readonly axis: "window" | "level";
 }
 
 const sweepWords: StudyWords = {
@@ -51,17 +53,25 @@ const sweepWords: StudyWords = {
   temperature: "0 300",
   accuracy: "1%",
   methods: ["refine", "cells", "points"],
+  axis: "window",
 };
 
 /** Adds the options of a sweep, --job and --workers to a command. */
 export function addSweepOptions(command: Command, study: Partial<StudyWords> = {}): Command {
   const words = { ...sweepWords, ...study };
-  return command
-    .option("--response <NAME...>", `what to compute (default ${words.response})`)
-    .option("--from <EV>", `lowest level, relative to the reference level (default ${words.from})`)
-    .option("--to <EV>", `highest level (default ${words.to})`)
-    .option("--points <N>", `number of levels (default ${words.points})`)
-    .option("--temperature <K...>", `temperatures in kelvin (default ${words.temperature})`)
+  const window = words.axis === "window";
+  command.option("--response <NAME...>", `what to compute (default ${words.response})`);
+  if (window)
+    command
+      .option("--from <EV>", `lowest level, relative to the reference level (default ${words.from})`)
+      .option("--to <EV>", `highest level (default ${words.to})`)
+      .option("--points <N>", `number of levels (default ${words.points})`);
+  else command.option("--level <EV>", `the level, relative to the reference level (default ${words.from})`);
+  command
+    .option(
+      "--temperature <K...>",
+      `${window ? "temperatures" : "one temperature"} in kelvin (default ${words.temperature})`,
+    )
     .option("--method <NAME>", words.methods.map((method) => methodWords[method]).join("; "))
     .option(
       "--accuracy <SHARE>",
@@ -73,8 +83,13 @@ export function addSweepOptions(command: Command, study: Partial<StudyWords> = {
     .option(
       "--unit <UNIT>",
       'unit of the responses, e.g. "(hbar/2e) S/cm", "S/m"; the default is stated in every result',
-    )
-    .option("--thermal", "the Mott integral of every response too: the current that a temperature gradient drives")
+    );
+  if (window)
+    command.option(
+      "--thermal",
+      "the Mott integral of every response too: the current that a temperature gradient drives",
+    );
+  return command
     .option("--job <FILE>", "options from a JSON file or from an earlier curves.json; options typed here win")
     .option("--workers <N>", "worker threads (default one per core); the numbers do not depend on it");
 }

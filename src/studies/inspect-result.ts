@@ -60,6 +60,8 @@ export interface GridContents {
   /** Null where the numbers are too broken to find it. */
   level: InspectedLevel | null;
   digests_checked: number;
+  /** Finer data in place of some cells. */
+  patches: { name: string; cells: number; divisions: number[]; points: number; bytes: number }[];
 }
 
 export interface InspectedGrid {

@@ -9,7 +9,14 @@ import { type Grid, openGrid } from "../grid/open.js";
 import { type ArraySurvey, type Survey, surveyGrid } from "../grid/survey.js";
 import { energyUnits, hessianUnits, momentUnits, velocityUnits } from "../grid/units.js";
 import { cellArea, cellVolume } from "../zone/lattice.js";
-import type { GridContents, InspectedArray, InspectedGrid, InspectedLevel, InspectResult } from "./inspect-result.js";
+import type {
+  GridContents,
+  InspectedArray,
+  InspectedGrid,
+  InspectedLevel,
+  InspectFault,
+  InspectResult,
+} from "./inspect-result.js";
 import { warningsOf } from "./inspect-warnings.js";
 import { countBelow, referenceLevel } from "./reference.js";
 
@@ -41,20 +48,33 @@ export function inspect(
 function inspectGrid(directory: string, options: InspectOptions, onProgress?: OnProgress): InspectedGrid {
   try {
     const grid = openGrid(directory);
-    const checked = options.digests ? verifyDigests(grid) : 0;
+    const checked = options.digests ? [grid, ...grid.patches].reduce((sum, each) => sum + verifyDigests(each), 0) : 0;
     const survey = surveyGrid(grid, (done, total) => onProgress?.(directory, done, total));
-    const faults = survey.findings.map(({ message, cure }) => ({ message, cure }));
-    if (survey.stopped !== undefined)
-      faults.push({ message: survey.stopped, cure: "Make the file readable as a whole." });
+    const surveys = [
+      { name: "", survey },
+      ...grid.patches.map((patch) => ({ name: `patch ${patchName(patch)}: `, survey: surveyGrid(patch) })),
+    ];
+    const faults = surveys.flatMap(faultsOf).slice(0, mostFaults);
     const sound = faults.length === 0;
     const contents = contentsOf(grid, survey, sound ? levelOf(grid.facts, survey) : null, checked);
-    const total = survey.findingsTotal + (survey.stopped === undefined ? 0 : 1);
+    const total = surveys.reduce((sum, each) => sum + each.survey.findingsTotal + (each.survey.stopped ? 1 : 0), 0);
     return { directory, sound, contents, faults, faults_total: total, warnings: warningsOf(contents, grid) };
   } catch (error) {
     if (!isFault(error)) throw error;
     const { message, cure } = error;
     return { directory, sound: false, contents: null, faults: [{ message, cure }], faults_total: 1, warnings: [] };
   }
+}
+
+const mostFaults = 20;
+const patchName = ({ facts }: Grid): string => facts.patch?.name ?? "";
+
+/** What is wrong with the numbers of the grid or of one of its patches. */
+function faultsOf({ name, survey }: { readonly name: string; readonly survey: Survey }): InspectFault[] {
+  const found = survey.findings.map(({ message, cure }) => ({ message: `${name}${message}`, cure }));
+  return survey.stopped === undefined
+    ? found
+    : [...found, { message: `${name}${survey.stopped}`, cure: "Make the file readable as a whole." }];
 }
 
 function contentsOf(grid: Grid, survey: Survey, level: InspectedLevel | null, digestsChecked: number): GridContents {
@@ -78,6 +98,13 @@ function contentsOf(grid: Grid, survey: Survey, level: InspectedLevel | null, di
     band_range_eV: survey.bandRanges.map(({ lowestEv, highestEv }) => [lowestEv, highestEv]),
     level,
     digests_checked: digestsChecked,
+    patches: grid.patches.map((patch) => ({
+      name: patchName(patch),
+      cells: patch.facts.patch?.cells.length ?? 0,
+      divisions: [...(patch.facts.patch?.divisions ?? [])],
+      points: patch.facts.points,
+      bytes: patch.facts.bytes,
+    })),
   };
 }
 

@@ -1,9 +1,9 @@
 // reference.ts: finds the level that holds a stated number of electrons, from the energies alone, when a grid states no Fermi level.
 import { occupiedWeight } from "../curves/occupation.js";
 import { walkPoints } from "../engine/blocks.js";
+import { openRegion } from "../engine/regions.js";
 import type { GridFacts } from "../grid/grid.js";
 import { openGrid } from "../grid/open.js";
-import { openReader } from "../grid/reader.js";
 import { planAxis } from "../spectrum/axis.js";
 import { createPointDeposit, createPointStore } from "../spectrum/points.js";
 
@@ -32,19 +32,27 @@ function bandRanges(facts: GridFacts): Float64Array {
   return ranges;
 }
 
-function visitEnergies(facts: GridFacts, visit: (energies: Float64Array, offset: number) => void): void {
-  const reader = openReader(openGrid(facts.directory, facts.view), { velocity: [], moments: [], hessian: false });
-  walkPoints(reader, { first: 0, count: facts.points }, [], (_flat, point) =>
-    visit(point.energyEv, point.energyOffset),
-  );
-  reader.close();
+/** Visits the energies of all stored points that count, patches' included; `weight`: of a point, in cells of the mesh. */
+function visitEnergies(
+  facts: GridFacts,
+  visit: (energies: Float64Array, offset: number, weight: number) => void,
+): void {
+  const { directory, view } = facts;
+  const { patches } = openGrid(directory, view);
+  for (const patch of [undefined, ...patches.keys()]) {
+    const region = openRegion({ directory, view }, { patch }, { velocity: [], moments: [], hessian: false });
+    walkPoints(region.reader, { first: 0, count: region.facts.points }, [], (flat, point) => {
+      if (region.counts(flat)) visit(point.energyEv, point.energyOffset, region.weight);
+    });
+    region.reader.close();
+  }
 }
 
 /** Electrons per cell in states up to a level, on the stored mesh. */
 export function countBelow(facts: GridFacts, levelEv: number): number {
   let states = 0;
-  visitEnergies(facts, (energies, offset) => {
-    for (let band = 0; band < facts.bands; band++) if (energies[offset + band] <= levelEv) states++;
+  visitEnergies(facts, (energies, offset, weight) => {
+    for (let band = 0; band < facts.bands; band++) if (energies[offset + band] <= levelEv) states += weight;
   });
   return (states * facts.electronsPerBand) / facts.points;
 }
@@ -77,8 +85,9 @@ function solveLevel(facts: GridFacts, filled: number, lowEv: number, highEv: num
   ]);
   const store = createPointStore(axis, 1);
   const deposit = createPointDeposit(store);
-  const one = Float64Array.of(1);
-  visitEnergies(facts, (energies, offset) => {
+  const one = new Float64Array(1);
+  visitEnergies(facts, (energies, offset, weight) => {
+    one[0] = weight;
     for (let band = 0; band < facts.bands; band++) deposit(energies[offset + band], one);
   });
   const count = occupiedWeight({ axis: axis.nodes, columns: 1, base: store.base, nodes: store.nodes });

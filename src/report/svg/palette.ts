@@ -32,3 +32,24 @@ export function temperatureColours(count: number): string[] {
   const stops = chosen[count] ?? Array.from({ length: count }, (_, at) => (at * (ramp.length - 1)) / (count - 1));
   return stops.map(between);
 }
+
+/** For quantities of both signs: middle and end of blue and of orange, told apart by the common kinds of colour vision. */
+const negative = ["#2468b0", "#1d2f6f"] as const;
+const positive = ["#d07a12", "#7a2d05"] as const;
+
+/** -1 (darkest blue) over 0 (nearly white) to 1 (darkest orange). */
+export function diverging(part: number): string {
+  const [middle, end] = part < 0 ? negative : positive;
+  const size = Math.min(1, Math.abs(part));
+  const stops = ["#f4f4f0", middle, end];
+  const left = size < 0.6 ? 0 : 1;
+  const share = left === 0 ? size / 0.6 : (size - 0.6) / 0.4;
+  const [a, b] = [channels(stops[left]), channels(stops[left + 1])];
+  return `#${a
+    .map((value, i) =>
+      Math.round(value + share * (b[i] - value))
+        .toString(16)
+        .padStart(2, "0"),
+    )
+    .join("")}`;
+}

@@ -1,0 +1,136 @@
+// locate-text.ts: what does `locate` say in words and tables, on a terminal?
+import type { LocatedResponse, LocateResult, Overlap } from "../studies/locate-result.js";
+import { cleanLine } from "./clean.js";
+import { grouped, plain, withError } from "./numbers.js";
+import { type Column, table, wrapped } from "./table.js";
+
+const pairsShown = 6;
+const cellsShown = 8;
+/** Contributions against the value's sign that are told as a matter of its own, in parts of all magnitudes. */
+const cancelling = 0.02;
+
+const right = (heading: string): Column => ({ heading, align: "right" });
+const left = (heading: string): Column => ({ heading, align: "left" });
+
+/** A share in percent, never "0%" for what is not nothing. */
+export const percent = (share: number): string => `${plain(100 * share, Math.abs(share) > 0.0995 ? 3 : 2)}%`;
+
+/** Bands of a set: "7", "10-11". */
+export function setWords(sets: LocateResult["sets"], set: number): string {
+  const bands = sets[set] ?? [];
+  return bands.length < 2 ? String(bands[0] ?? "?") : `${bands[0]}-${bands[bands.length - 1]}`;
+}
+
+const level = (levelEv: number): string => `${levelEv > 0 ? "+" : ""}${plain(levelEv, 4)} eV`;
+
+/** Energies in eV, meV or ueV. */
+const gap = (gapEv: number): string => {
+  if (!Number.isFinite(gapEv)) return "none";
+  if (gapEv >= 0.1) return `${plain(gapEv, 3)} eV`;
+  return gapEv >= 1e-4 ? `${plain(1e3 * gapEv, 3)} meV` : `${plain(1e6 * gapEv, 3)} ueV`;
+};
+
+function opening(result: LocateResult): string {
+  const { grid, sampling } = result;
+  const title = cleanLine(grid.title);
+  const patched = sampling.patches > 0 ? `, ${grouped(sampling.patches)} cells replaced by patches` : "";
+  return (
+    `${title === "" ? "" : `${title}: `}where the responses at ${level(result.level_eV)} from the reference level (${plain(result.reference_eV)} eV) ` +
+    `and ${plain(result.temperature_K)} K come from. Mesh ${grid.divisions.slice(0, grid.periodic).join(" x ")}, ${grid.bands} bands; method ${sampling.method}${patched}.`
+  );
+}
+
+/** The answer for one response. */
+export function answer(result: LocateResult, response: LocatedResponse): string {
+  const { value, error, positive, negative, concentration, pairs } = response;
+  const [name, unit] = [cleanLine(response.name), cleanLine(response.unit)];
+  const start = `${name} is ${withError(value, error)} ${unit}.`;
+  const all = positive - negative;
+  if (all === 0) return `${start} Nothing contributes to it at this level.`;
+  const most = concentration.find(({ share }) => share === 0.8) ?? concentration[0];
+  const against = Math.min(positive, -negative) / all;
+  const mixed = against > cancelling;
+  const where = mixed
+    ? `${percent(most.zone)} of the zone makes ${percent(most.share)} of all contributions, sizes added; they are of both signs, ${plain(positive, 4)} and ${plain(negative, 4)}, and this part gives ${plain(most.net, 4)} net.`
+    : `${percent(most.zone)} of the zone makes ${percent(most.share)} of it.`;
+  const [first] = pairs;
+  const pair =
+    first === undefined || first.contribution === 0
+      ? ""
+      : ` The pair of bands ${setWords(result.sets, first.lower)} and ${setWords(result.sets, first.upper)} gives most, ${plain(first.contribution, 4)}.`;
+  return `${start} ${where}${pair}`;
+}
+
+function pairTable(result: LocateResult, { pairs, value }: LocatedResponse): string {
+  const rows = pairs
+    .slice(0, pairsShown)
+    .map(({ lower, upper, contribution, cumulated }) => [
+      `${setWords(result.sets, lower)} / ${setWords(result.sets, upper)}`,
+      plain(contribution, 4),
+      plain(cumulated, 4),
+      value === 0 ? "" : percent(cumulated / value),
+    ]);
+  return table(rows, [left("bands"), right("contribution"), right("summed"), right("of the value")]);
+}
+
+function cellTable(result: LocateResult, { cells }: LocatedResponse): string {
+  const axes = [0, 1, 2].slice(0, result.grid.periodic);
+  const rows = cells
+    .slice(0, cellsShown)
+    .map(({ rank, k, contribution, cumulated, zone, hottest, pair }) => [
+      String(rank),
+      axes.map((j) => plain(k[j], 4)).join(" "),
+      plain(contribution, 3),
+      plain(cumulated, 4),
+      percent(zone),
+      axes.map((j) => plain(hottest.k[j], 4)).join(" "),
+      `${setWords(result.sets, pair.lower)} / ${setWords(result.sets, pair.upper)}`,
+      gap(hottest.gap_eV),
+    ]);
+  return table(rows, [
+    right("rank"),
+    left("cell at k"),
+    right("contribution"),
+    right("summed"),
+    right("zone"),
+    left("hottest at k"),
+    left("bands"),
+    right("gap there"),
+  ]);
+}
+
+const grades: readonly (readonly [least: number, words: string])[] = [
+  [0.75, "largely the same"],
+  [0.45, "partly the same"],
+  [0, "mostly different"],
+];
+const graded = (part: number): string => (grades.find(([least]) => part >= least) ?? grades[2])[1];
+
+const signWords = (cosine: number): string =>
+  Math.abs(cosine) < 0.3 ? "signs unrelated" : cosine > 0 ? "signs alike" : "signs opposite";
+
+/** Whether two responses come from the same crossings. */
+export function overlapWords({ a, b, ...each }: Overlap): string {
+  return (
+    `${cleanLine(a)} and ${cleanLine(b)} come from ${graded(each.cells_common)} cells (${percent(each.cells_common)} in common, ${signWords(each.cells_cosine)}: cosine ${plain(each.cells_cosine, 2)}) ` +
+    `and ${graded(each.pairs_common)} pairs of bands (${percent(each.pairs_common)} in common, cosine ${plain(each.pairs_cosine, 2)}).`
+  );
+}
+
+/** The text of a location; `width` in columns. Ends with a newline. */
+export function locateText(result: LocateResult, { width }: { readonly width: number }): string {
+  const blocks = result.responses.flatMap((response) => [
+    wrapped(answer(result, response), width),
+    ...(response.positive === response.negative ? [] : [pairTable(result, response), cellTable(result, response)]),
+  ]);
+  const overlap = result.overlap
+    .filter((each) => each.cells_common > 0)
+    .map((each) => wrapped(overlapWords(each), width));
+  const paragraphs = [
+    wrapped(opening(result), width),
+    ...blocks,
+    ...overlap,
+    result.notes.map((note) => wrapped(`- ${cleanLine(note)}`, width)).join("\n"),
+  ];
+  return `${paragraphs.join("\n\n")}\n`;
+}
