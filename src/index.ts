@@ -22,6 +22,8 @@ export { type AngleOptions, angle, angleOptions } from "./studies/angle.js";
 export type { AngleResult } from "./studies/angle-result.js";
 export { type DopeOptions, dope, dopeOptions } from "./studies/dope.js";
 export type { DopeResult } from "./studies/dope-result.js";
+export { type ConvergeOptions, converge, convergeOptions } from "./studies/converge.js";
+export type { ConvergeResult } from "./studies/converge-result.js";
 export { inspect, inspectOptions } from "./studies/inspect.js";
 export { type SeriesOptions, series, seriesOptions } from "./studies/series.js";
 export type { SeriesResult } from "./studies/series-result.js";

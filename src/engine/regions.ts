@@ -4,7 +4,7 @@ import { type Grid, openGrid } from "../grid/open.js";
 import { pointsPerCell } from "../grid/patches.js";
 import { openReader } from "../grid/reader.js";
 import { cellEdges } from "../zone/mesh.js";
-import type { SweepJob, Task } from "./job.js";
+import type { SweepJob } from "./job.js";
 
 /** One region, opened for reading. */
 export interface Region {
@@ -33,7 +33,11 @@ function patchesByCell(grid: Grid): Map<number, Grid> {
 }
 
 /** Opens the region that a task lies in. */
-export function openRegion(job: Pick<SweepJob, "directory" | "view">, task: Pick<Task, "patch">, want: Want): Region {
+export function openRegion(
+  job: Pick<SweepJob, "directory" | "view">,
+  task: { readonly patch?: number | undefined },
+  want: Want,
+): Region {
   const grid = openGrid(job.directory, job.view);
   const own = task.patch === undefined ? grid : grid.patches[task.patch];
   const patchOf = patchesByCell(grid);
