@@ -39,6 +39,7 @@ function contentsText(contents: GridContents, width: number): string {
     ["title", cleanLine(contents.title) || "none"],
     ["cell", cellWords(contents)],
     ["mesh", meshWords(contents)],
+    ...patchLines(contents),
     ["bands", bandWords(contents)],
     ["level", contents.level === null ? "not looked for: the numbers have faults" : levelWords(contents.level)],
     ["moments", momentWords(contents)],
@@ -76,6 +77,12 @@ function meshWords({ divisions, offset, periodic, points, bytes }: GridContents)
     : "";
   return `${divisions.slice(0, periodic).join(" x ")}${start}: ${grouped(points)} k points, ${byteWords(bytes)}`;
 }
+
+const patchLines = ({ patches }: GridContents): [string, string][] =>
+  patches.map(({ name, cells, divisions, points, bytes }) => [
+    `patch ${cleanLine(name)}`,
+    `${grouped(cells)} cells, each ${divisions.join(" x ")}: ${grouped(points)} k points, ${byteWords(bytes)}`,
+  ]);
 
 function bandWords({ bands, electrons_per_band: electrons, band_range_eV: ranges }: GridContents): string {
   const low = Math.min(...ranges.map((range) => range[0]));

@@ -49,6 +49,7 @@ const contents: GridContents = {
     gap_eV: null,
   },
   digests_checked: 0,
+  patches: [],
 };
 
 const result = (more: Partial<InspectResult["grids"][number]> = {}): InspectResult => ({
