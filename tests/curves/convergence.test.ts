@@ -81,13 +81,14 @@ describe("plain sums", () => {
     const off = meshes[0].plain[0].map((value, level) => Math.abs(value - truth[level]));
     return { bound, rates, off };
   };
-  // Errors that fall as powers: the bound holds the error, and is no more than ten times as large.
+  // Errors that fall as powers: the bound holds the error, and is no more than ten times as large; where they fall faster than a metal's
+  // (power 2 here), the bound does not count on it from a mesh of twice the step on.
   for (const power of [2, 3, 4])
     it(`with coefficients ~ m^-${power}: rate ${power}, the bound holds and is not absurd`, () => {
       const { bound, rates, off } = boundOf((m) => 0.01 * m ** -power);
       for (const level of truth.keys()) {
         expect(bound[level]).toBeGreaterThan(off[level]);
-        expect(bound[level]).toBeLessThan(10 * off[level]);
+        expect(bound[level]).toBeLessThan((10 * off[level] * aliasGrowth(2, Math.max(2, power))) / aliasGrowth(2, 2));
         // Aliases that so few shifts cannot tell apart add in phase, which shifts the rate by up to a half.
         expect(Math.abs(rates[level].rate - power)).toBeLessThan(0.6);
       }
@@ -97,7 +98,8 @@ describe("plain sums", () => {
     const { bound, off } = boundOf((m) => Math.exp(-12 * m));
     for (const level of truth.keys()) {
       expect(bound[level]).toBeGreaterThan(off[level]);
-      expect(bound[level]).toBeLessThan(2e-3);
+      // Less than what the mesh of twice the step is off by.
+      expect(bound[level]).toBeLessThan(1.3 * Math.exp(-6));
     }
   });
 

@@ -38,7 +38,7 @@ const rms = (values: readonly number[]): number =>
   Math.sqrt(values.reduce((sum, value) => sum + value ** 2, 0) / Math.max(1, values.length));
 
 const perDirection = (result: ConvergeResult): number[] =>
-  result.meshes.map(({ points, divisions }) => points ** (1 / divisions.length));
+  result.meshes.map(({ points, divisions }) => Math.round(1e6 * points ** (1 / divisions.length)) / 1e6);
 
 /** Root mean square over the window of how far each mesh is off, as parts of the largest value. */
 function errorMarks(result: ConvergeResult, curve: ConvergeCurve): Mark[] {
