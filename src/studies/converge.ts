@@ -190,6 +190,10 @@ function notesOf(swept: readonly SweptMesh[], own: CurvesResult, { method }: Con
     more.push(
       `of the meshes of ${capped.map(({ mesh }) => mesh.divisions.join(" x ")).join(", ")} not all shifts were summed`,
     );
+  for (const { mesh } of contained.filter(({ mesh }) => mesh.blind))
+    more.push(
+      `the shifts of ${mesh.divisions.join(" x ")} may be mirror images of each other (the mesh is moved by half a step): their sums then equal that of the stored mesh and tell nothing`,
+    );
   const part = contained.filter(({ refined, plain }) => refined.length > 0 && refined.length < plain.length);
   if (method === "refine" && part.length > 0)
     more.push(
