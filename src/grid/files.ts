@@ -1,6 +1,6 @@
 // files.ts: which files an array's `files` entry names, in which order, and whether they may be read at all.
 import { lstatSync, realpathSync, statSync } from "node:fs";
-import { isAbsolute, join, relative, sep } from "node:path";
+import { isAbsolute, relative, resolve, sep } from "node:path";
 import fastGlob from "fast-glob";
 import { dataFault, type Fault } from "../base/errors.js";
 import { quoted, reasonOf } from "./jsontext.js";
@@ -24,22 +24,30 @@ export function naturalOrder(a: string, b: string): number {
   return collator.compare(a, b) || (a < b ? -1 : a > b ? 1 : 0);
 }
 
+/** Where the files of an array may lie: inside the grid's directory, or anywhere (files that the user names in person). */
+export type Reach = "inside" | "anywhere";
+
 /**
- * The files of one array in natural order. All are regular files inside `directory`, each named once.
+ * The files of one array in natural order. All are regular files, each named once; inside `directory` unless `reach` is "anywhere".
  * Throws a data Fault that starts with `array`.
  */
-export function findFiles(directory: string, array: string, files: string | readonly string[]): FoundFile[] {
+export function findFiles(
+  directory: string,
+  array: string,
+  files: string | readonly string[],
+  reach: Reach = "inside",
+): FoundFile[] {
   const root = realpathSync(directory);
   const entries = typeof files === "string" ? [files] : files;
   const names: string[] = [];
   for (const entry of entries) {
-    for (const name of namesOfEntry(root, array, entry)) names.push(name);
+    for (const name of namesOfEntry(root, array, entry, reach)) names.push(name);
     // Counted as they come: many patterns that match many files must not fill the memory.
     if (names.length > mostFiles) {
       throw dataFault(`${array}: more than ${mostFiles} files are named`, "Join them into fewer, and name each once.");
     }
   }
-  const found = names.sort(naturalOrder).map((name) => examine(root, array, name));
+  const found = names.sort(naturalOrder).map((name) => examine(root, array, name, reach));
   const seen = new Map<string, string>();
   for (const file of found) {
     const other = seen.get(file.identity);
@@ -56,10 +64,10 @@ export function sameFile(array: string, other: string, name: string): Fault {
   return dataFault(`${array}: ${twice}`, "Name each file once, in one array.");
 }
 
-function namesOfEntry(root: string, array: string, entry: string): string[] {
-  checkName(array, entry);
+function namesOfEntry(root: string, array: string, entry: string, reach: Reach): string[] {
+  checkName(array, entry, reach);
   // A name that exists is a name, even where it holds a character that patterns use.
-  if (exists(join(root, entry)) || !/[*?[]/.test(entry)) return [entry.replace(/^(?:\.\/+)+/, "")];
+  if (exists(resolve(root, entry)) || !/[*?[]/.test(entry)) return [entry.replace(/^(?:\.\/+)+/, "")];
   if ((entry.match(/\*/g) ?? []).length > mostStars) {
     throw dataFault(
       `${array}: the pattern ${quoted(entry)} has more than ${mostStars} stars`,
@@ -85,9 +93,10 @@ function namesOfEntry(root: string, array: string, entry: string): string[] {
   return names;
 }
 
-function checkName(array: string, entry: string): void {
+function checkName(array: string, entry: string, reach: Reach): void {
   const cure = "Name files inside the band grid's directory only.";
   if (entry.includes("\0")) throw dataFault(`${array}: file name ${quoted(entry)} holds a zero byte`, cure);
+  if (reach === "anywhere") return;
   if (isAbsolute(entry) || /^[A-Za-z]:[\\/]/.test(entry)) {
     throw dataFault(`${array}: ${quoted(entry)} is an absolute path`, cure);
   }
@@ -96,8 +105,8 @@ function checkName(array: string, entry: string): void {
   }
 }
 
-function examine(root: string, array: string, name: string): FoundFile {
-  const path = join(root, name);
+function examine(root: string, array: string, name: string, reach: Reach): FoundFile {
+  const path = resolve(root, name);
   let real: string;
   let state: ReturnType<typeof statSync>;
   try {
@@ -111,7 +120,8 @@ function examine(root: string, array: string, name: string): FoundFile {
     );
   }
   const inside = relative(root, real);
-  if (inside === "" || inside.split(sep)[0] === ".." || isAbsolute(inside)) {
+  const leadsOut = inside === "" || inside.split(sep)[0] === ".." || isAbsolute(inside);
+  if (leadsOut && reach === "inside") {
     throw dataFault(
       `${array}: ${quoted(name)} is a link that leads out of the directory`,
       "Copy the file into the directory.",

@@ -11,7 +11,7 @@ import {
   isComplex,
   npyType,
 } from "./arrays.js";
-import { type FoundFile, findFiles, sameFile } from "./files.js";
+import { type FoundFile, findFiles, type Reach, sameFile } from "./files.js";
 import { quoted, reasonOf } from "./jsontext.js";
 import type { ArrayEntry, Axis } from "./manifest.js";
 import { isNpy, type NpyHeader, npyPrefixBytes, parseNpy } from "./npy.js";
@@ -24,6 +24,9 @@ export interface ArrayRequest {
   readonly bands: number;
   readonly components: number;
   readonly factor: number;
+  /** Divisions of the mesh: the k axis of a .npy in C order may be spelled out as these. */
+  readonly mesh?: readonly number[];
+  readonly reach?: Reach;
 }
 
 /**
@@ -33,19 +36,20 @@ export interface ArrayRequest {
 export function planArray(
   directory: string,
   entry: ArrayEntry,
-  request: ArrayRequest,
+  asked: ArrayRequest,
   taken: Map<string, string>,
 ): ArrayPlan {
+  const { mesh, reach, ...request } = asked;
   checkType(entry, request);
   checkAxes(entry, request);
-  const found = findFiles(directory, `arrays.${request.name}`, entry.files);
+  const found = findFiles(directory, `arrays.${request.name}`, entry.files, reach);
   for (const file of found) {
     const other = taken.get(file.identity);
     if (other !== undefined) throw sameFile(`arrays.${request.name}`, other, file.name);
   }
   for (const file of found) taken.set(file.identity, file.name);
   const layout = { ...request, axes: entry.axes, type: entry.type, byteOrder: entry.byteOrder };
-  const files = placeFiles(layout, found);
+  const files = placeFiles(layout, found, mesh);
   return { ...layout, files, digests: digestsOf(entry, request.name, files.length) };
 }
 
@@ -73,7 +77,7 @@ function checkAxes(entry: ArrayEntry, request: ArrayRequest): void {
 
 type Layout = Omit<ArrayPlan, "files" | "digests">;
 
-function placeFiles(plan: Layout, found: readonly FoundFile[]): FilePlan[] {
+function placeFiles(plan: Layout, found: readonly FoundFile[], mesh: readonly number[] | undefined): FilePlan[] {
   const perPoint = bytesPerPoint(plan);
   if (!Number.isSafeInteger(perPoint * plan.points)) {
     throw dataFault(`arrays.${plan.name}: its size cannot be counted in bytes`, "Correct mesh.divisions or bands.");
@@ -86,7 +90,10 @@ function placeFiles(plan: Layout, found: readonly FoundFile[]): FilePlan[] {
     const bytes = file.bytes - dataOffset;
     const whole = found.length === 1;
     // The header first: a wrong type explains a wrong length better than the length does.
-    if (header !== undefined) checkHeader(plan, file.name, header, whole ? plan.points : Math.floor(bytes / perPoint));
+    if (header !== undefined) {
+      const points = whole ? plan.points : Math.floor(bytes / perPoint);
+      checkHeader(plan, file.name, whole ? withFlatMesh(header, plan, mesh) : header, points);
+    }
     if (whole) checkWhole(plan, file.name, bytes);
     else if (bytes <= 0 || bytes % perPoint !== 0) {
       throw dataFault(
@@ -144,6 +151,20 @@ function headerOf(plan: Layout, file: FoundFile): NpyHeader | undefined {
   const header = parseNpy(prefix);
   if (typeof header === "string") throw dataFault(`${where}: ${header}`, "Write it again with numpy.save.");
   return header;
+}
+
+/** A header whose k axis is spelled out as (n1, n2, n3), or (n1, n2) where n3 is 1, as the one flat axis that those numbers make. */
+function withFlatMesh(header: NpyHeader, plan: Layout, mesh: readonly number[] | undefined): NpyHeader {
+  const spelled = header.shape.length - plan.axes.length + 1;
+  const at = plan.axes.indexOf("k");
+  const isMesh =
+    mesh !== undefined &&
+    !header.fortranOrder &&
+    (spelled === 3 || (spelled === 2 && mesh[2] === 1)) &&
+    mesh.slice(0, spelled).every((size, axis) => header.shape[at + axis] === size);
+  if (!isMesh) return header;
+  const flat = mesh.reduce((product, size) => product * size, 1);
+  return { ...header, shape: [...header.shape.slice(0, at), flat, ...header.shape.slice(at + spelled)] };
 }
 
 function checkHeader(plan: Layout, name: string, header: NpyHeader, points: number): void {
