@@ -1,11 +1,14 @@
 // locate-text.ts: what does `locate` say in words and tables, on a terminal?
-import type { LocatedResponse, LocateResult, Overlap } from "../studies/locate-result.js";
+import type { LocatedCell, LocatedResponse, LocateResult, Overlap } from "../studies/locate-result.js";
 import { cleanLine } from "./clean.js";
 import { grouped, plain, withError } from "./numbers.js";
 import { type Column, table, wrapped } from "./table.js";
 
 const pairsShown = 6;
+/** Groups of cells that are alike. */
 const cellsShown = 8;
+/** Contributions that differ by less than this part of themselves are alike. */
+const alike = 0.01;
 /** Contributions against the value's sign that are told as a matter of its own, in parts of all magnitudes. */
 const cancelling = 0.02;
 
@@ -73,29 +76,49 @@ function pairTable(result: LocateResult, { pairs, value }: LocatedResponse): str
   return table(rows, [left("bands"), right("contribution"), right("summed"), right("of the value")]);
 }
 
+/** Cells in a row of the ranking that give as much through the same bands: as a rule images of each other under the crystal's symmetry. */
+function alikeCells(cells: readonly LocatedCell[]): LocatedCell[][] {
+  const groups: LocatedCell[][] = [];
+  for (const cell of cells) {
+    const [first] = groups.at(-1) ?? [];
+    const same =
+      first !== undefined &&
+      Math.abs(cell.contribution - first.contribution) <= alike * Math.abs(first.contribution) &&
+      cell.pair.lower === first.pair.lower &&
+      cell.pair.upper === first.pair.upper;
+    if (same) groups[groups.length - 1].push(cell);
+    else groups.push([cell]);
+  }
+  return groups;
+}
+
 function cellTable(result: LocateResult, { cells }: LocatedResponse): string {
   const axes = [0, 1, 2].slice(0, result.grid.periodic);
-  const rows = cells
+  const place = (k: LocatedCell["k"]): string => axes.map((j) => plain(k[j], 3)).join(" ");
+  const rows = alikeCells(cells)
     .slice(0, cellsShown)
-    .map(({ rank, k, contribution, cumulated, zone, hottest, pair }) => [
-      String(rank),
-      axes.map((j) => plain(k[j], 4)).join(" "),
-      plain(contribution, 3),
-      plain(cumulated, 4),
-      percent(zone),
-      axes.map((j) => plain(hottest.k[j], 4)).join(" "),
-      `${setWords(result.sets, pair.lower)} / ${setWords(result.sets, pair.upper)}`,
-      gap(hottest.gap_eV),
-    ]);
+    .map((group) => {
+      const [{ k, contribution, hottest, pair }, last] = [group[0], group[group.length - 1]];
+      return [
+        String(group.length),
+        plain(contribution, 3),
+        plain(last.cumulated, 4),
+        percent(last.zone),
+        place(k),
+        place(hottest.k),
+        gap(hottest.gap_eV),
+        `${setWords(result.sets, pair.lower)} / ${setWords(result.sets, pair.upper)}`,
+      ];
+    });
   return table(rows, [
-    right("rank"),
-    left("cell at k"),
-    right("contribution"),
+    right("cells"),
+    right("each"),
     right("summed"),
     right("zone"),
+    left("one is at k"),
     left("hottest at k"),
-    left("bands"),
     right("gap there"),
+    left("most by bands"),
   ]);
 }
 

@@ -45,19 +45,19 @@ export function rankedPairs(
   return pairs;
 }
 
-const magnitude = (values: ArrayLike<number>): number =>
-  Array.prototype.reduce.call(
-    values,
-    (sum: unknown, value: unknown) => Number(sum) + Math.abs(Number(value)),
-    0,
-  ) as number;
+function magnitude(values: ArrayLike<number>): number {
+  let sum = 0;
+  for (let i = 0; i < values.length; i++) sum += Math.abs(values[i]);
+  return sum;
+}
 
 /** Sum of the smaller shares of two vectors of magnitudes. */
 function common(a: ArrayLike<number>, b: ArrayLike<number>): number {
   const [all, other] = [magnitude(a), magnitude(b)];
+  if (all === 0 || other === 0) return 0;
   let sum = 0;
   for (let i = 0; i < a.length; i++) sum += Math.min(Math.abs(a[i]) / all, Math.abs(b[i]) / other);
-  return all > 0 && other > 0 ? sum : 0;
+  return sum;
 }
 
 function cosine(a: ArrayLike<number>, b: ArrayLike<number>): number {

@@ -92,8 +92,17 @@ export function sheetAt(
   const [px, qx, qy] = [(a * size) / columns, (shift * size) / rows, (-height * size) / rows];
   const [x0, y0] = [frame.x + Math.max(0, -shift * size), top + height * size];
   const matrix = [px, 0, qx, qy, x0, y0].map(short).join(",");
+  const corners = [
+    [0, 0],
+    [columns, 0],
+    [columns, rows],
+    [0, rows],
+  ].map(([u, v]) => `${short(x0 + u * px + v * qx)},${short(y0 + v * qy)}`);
+  const outline = (fill: string, stroke: string): string =>
+    `<polygon points="${corners.join(" ")}" fill="${fill}" stroke="${stroke}"/>`;
+  const colours = `<g transform="matrix(${matrix})" shape-rendering="crispEdges">${coloured(sheet.rows, scale)}</g>`;
   return {
-    markup: `<g class="sheet">${lines.join("")}<g transform="matrix(${matrix})" shape-rendering="crispEdges"><rect width="${columns}" height="${rows}" fill="${diverging(0)}"/>${coloured(sheet.rows, scale)}<rect width="${columns}" height="${rows}" fill="none" stroke="${tone.zero}" stroke-width="1" vector-effect="non-scaling-stroke"/></g></g>`,
+    markup: `<g class="sheet">${lines.join("")}${outline(diverging(0), "none")}${colours}${outline("none", tone.zero)}</g>`,
     bottomPx: Math.ceil(y0),
   };
 }
