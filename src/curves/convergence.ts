@@ -186,6 +186,9 @@ export function plainBounds(evidence: Evidence): Bounds {
   return { bound, rates };
 }
 
+/** Local models err by the square of the step at most; meshes too coarse for them to hold show less. */
+const leastModelOrder = 2;
+
 /**
  * Bounds of the finest mesh's refined value: two of its calibrated bars; wider where all shifts of the densest contained mesh differ
  * from it by more than the one shift that the bar was made from.
@@ -208,5 +211,6 @@ export function refinedBounds(evidence: Evidence): Bounds | undefined {
     const model = dense === undefined ? 0 : differ[level] / biasGrowth(dense.step, evidence.refinedOrder);
     return 2 * Math.max(bar, Math.hypot(evidence.samplingBar[level], model));
   });
-  return { bound, rates: fits.map(({ rate, from }) => ({ rate: Math.min(rate, evidence.refinedOrder), from })) };
+  const told = (rate: number): number => Math.min(Math.max(rate, leastModelOrder), evidence.refinedOrder);
+  return { bound, rates: fits.map(({ rate, from }) => ({ rate: told(rate), from })) };
 }

@@ -26,7 +26,9 @@ function needWords(verdict: ConvergeVerdict, refines: boolean): string {
   if (verdict.samples_wanted && refines) words.push("more samples (a smaller --accuracy, or --samples)");
   if (refines && verdict.refined_needs) words.push(`about ${meshName(verdict.refined_needs)} points with refinement`);
   if (verdict.plain_needs) words.push(`about ${meshName(verdict.plain_needs)} as a plain sum`);
-  return words.length === 0 ? "no mesh can be named: the errors do not fall" : `needs ${words.join(", or ")}`;
+  return words.length === 0
+    ? "no mesh can be named: the coarser ones show no fall of the errors to go by"
+    : `needs ${words.join(", or ")}`;
 }
 
 /** One verdict as a sentence without its full stop. */
