@@ -85,7 +85,7 @@ function placeFiles(plan: Layout, found: readonly FoundFile[], mesh: readonly nu
   let firstPoint = 0;
   const files: FilePlan[] = [];
   for (const file of found) {
-    const header = headerOf(plan, file);
+    const header = headerOf(plan.name, file);
     const dataOffset = header?.dataOffset ?? 0;
     const bytes = file.bytes - dataOffset;
     const whole = found.length === 1;
@@ -130,9 +130,9 @@ function shapeText(plan: Layout, points: number): string {
   return `${sizes.join(" x ")} x ${elementBytes[plan.type]} bytes`;
 }
 
-/** The .npy header of a file; undefined for raw numbers. */
-function headerOf(plan: Layout, file: FoundFile): NpyHeader | undefined {
-  const where = `arrays.${plan.name}: file ${quoted(file.name)}`;
+/** The .npy header of a file of the array `name`; undefined for raw numbers. Throws a data Fault for a broken header. */
+export function headerOf(name: string, file: FoundFile): NpyHeader | undefined {
+  const where = `arrays.${name}: file ${quoted(file.name)}`;
   const buffer = Buffer.alloc(Math.min(file.bytes, npyPrefixBytes));
   let length: number;
   try {
