@@ -1,5 +1,5 @@
 // arrays.ts: where the numbers of one array lie: files, byte offsets, order of axes, type, factor to canonical units.
-import type { Axis, NumberType } from "./manifest.js";
+import { type Axis, directionNames, type NumberType, pairNames } from "./manifest.js";
 
 /** One file of an array. It holds the stored k points firstPoint ... firstPoint + points - 1. */
 export interface FilePlan {
@@ -10,6 +10,8 @@ export interface FilePlan {
   readonly points: number;
   /** Bytes before the first number. */
   readonly dataOffset: number;
+  /** Set where the array has files of its own for each component: which one this holds. */
+  readonly component?: number;
 }
 
 export type ArrayRole = "energy" | "velocity" | "moment" | "hessian";
@@ -19,7 +21,7 @@ export interface ArrayPlan {
   /** As in the manifest: "energy", "velocity", "moments.spin", "hessian". */
   readonly name: string;
   readonly role: ArrayRole;
-  /** Order in which the numbers lie in each file, slowest first. */
+  /** Order in which the numbers lie in each file, slowest first; without direction or pair where each component has files of its own. */
   readonly axes: readonly Axis[];
   readonly points: number;
   readonly bands: number;
@@ -32,6 +34,17 @@ export interface ArrayPlan {
   readonly files: readonly FilePlan[];
   /** SHA-256 per file as the manifest gives them, lower case; undefined where it gives none. */
   readonly digests: readonly string[] | undefined;
+}
+
+/** Names of an array's components in order; one empty name where there is one component only. */
+export function componentNamesOf({ role, components }: Pick<ArrayPlan, "role" | "components">): readonly string[] {
+  if (components === 1) return [""];
+  return role === "hessian" ? pairNames : directionNames;
+}
+
+/** True where each component has files of its own. */
+export function isSplit({ files }: Pick<ArrayPlan, "files">): boolean {
+  return files[0]?.component !== undefined;
 }
 
 /** Bytes of one element: a complex number is one element. */
@@ -53,7 +66,7 @@ export function axisSize(plan: Pick<ArrayPlan, "bands" | "components">, axis: Ax
   return axis === "direction" || axis === "pair" ? plan.components : plan.bands;
 }
 
-/** Bytes of one k point of an array. */
+/** Bytes of one k point in a file of an array. */
 export function bytesPerPoint(plan: Pick<ArrayPlan, "bands" | "components" | "axes" | "type">): number {
   return plan.axes.reduce((product, axis) => product * axisSize(plan, axis, 1), elementBytes[plan.type]);
 }

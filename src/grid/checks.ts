@@ -14,7 +14,6 @@ export type OtherMesh = Pick<GridFacts, "divisions" | "offset" | "points" | "pat
 /** Checks the manifest as a whole and converts it; throws a data Fault starting with `where`. */
 export function factsOf(manifest: Manifest, where: string, mesh?: OtherMesh): ManifestFacts {
   const fail = (message: string, cure: string): Fault => dataFault(`${where}: ${message}`, cure);
-  refuseUnread(manifest, fail);
   const { divisions, offset, points, patch } = mesh ?? statedMesh(manifest, fail);
   return {
     title: manifest.title,
@@ -60,21 +59,6 @@ function statedMesh(manifest: Manifest, fail: Fail): OtherMesh {
 }
 
 type Fail = (message: string, cure: string) => Fault;
-
-function refuseUnread(manifest: Manifest, fail: Fail): void {
-  const cure = "Give the full mesh, without this field.";
-  const reduced = [
-    ["points", manifest.points],
-    ["symmetry", manifest.symmetry],
-    ["arrays.point", manifest.arrays.point],
-    ["arrays.weight", manifest.arrays.weight],
-  ] as const;
-  for (const [name, value] of reduced) {
-    if (value !== undefined) {
-      throw fail(`${name} belongs to a symmetry-reduced grid, which this version does not read yet`, cure);
-    }
-  }
-}
 
 function latticeOf(manifest: Manifest, fail: Fail) {
   const factor = lengthUnits[manifest.lattice.unit];

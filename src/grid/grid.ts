@@ -61,6 +61,8 @@ export interface GridFacts {
    * the stored ones, cell after cell.
    */
   readonly patch?: PatchCells;
+  /** Of a symmetry-reduced grid: the flat mesh index of every stored point. */
+  readonly storedFlat?: Int32Array | undefined;
 }
 
 /** Which matrices a pass needs. Energies always come. */

@@ -5,7 +5,17 @@ import { type ArrayPlan, type ArrayRole, bytesPerPoint, type FilePlan, isComplex
 import type { HessianKind, MomentFacts, PatchCells, Triple } from "./grid.js";
 import { type ArrayEntry, type Axis, formatName, type NumberType } from "./manifest.js";
 import { pointsPerCell } from "./patches.js";
+import type { Operation } from "./symmetry.js";
 import { energyUnits, hessianUnits, momentUnits, velocityUnits } from "./units.js";
+
+/** One point of every star, and the group that makes the others. */
+export interface ReducedPoints {
+  readonly operations: readonly Operation[];
+  /** Fractional, in b1, b2, b3. */
+  readonly points: readonly Triple[];
+  /** Summing to 1. */
+  readonly weights: readonly number[];
+}
 
 /** What a band grid to be written holds; units as in GridFacts. At least one of fermiEv and electrons must be given. */
 export interface GridDescription {
@@ -17,6 +27,8 @@ export interface GridDescription {
   readonly offset: Triple;
   /** Set where the points are those of a patch, cell after cell. */
   readonly patch?: Omit<PatchCells, "name">;
+  /** Set where only these points of the mesh are written, in this order. */
+  readonly reduced?: ReducedPoints;
   readonly bands: number;
   readonly electronsPerBand: 1 | 2;
   readonly fermiEv?: number | undefined;
@@ -88,7 +100,8 @@ export function planLayout(directory: string, description: GridDescription, layo
 }
 
 /** Number of k points to be written. */
-function pointsOf({ divisions, patch }: GridDescription): number {
+export function pointsOf({ divisions, patch, reduced }: GridDescription): number {
+  if (reduced !== undefined) return reduced.points.length;
   return patch === undefined ? divisions[0] * divisions[1] * divisions[2] : patch.cells.length * pointsPerCell(patch);
 }
 
@@ -169,6 +182,7 @@ export function manifestOf(
     ...(description.patch === undefined
       ? { mesh: { divisions: description.divisions, offset: description.offset } }
       : { patch: { divisions: description.patch.divisions, cells: cellsFile } }),
+    ...reducedFields(description),
     bands: description.bands,
     electronsPerBand: description.electronsPerBand,
     level: { unit: "eV", fermi: description.fermiEv, electrons: description.electrons },
@@ -177,11 +191,23 @@ export function manifestOf(
       velocity: entryOf("velocity"),
       moments: Object.fromEntries(moments),
       hessian: description.hessian === "free-electron" ? "free-electron" : entryOf("hessian"),
+      ...(description.reduced === undefined ? {} : reducedArrays),
     },
     tags: description.tags ?? {},
     provenance: { ...description.provenance, writer: writerName },
   };
 }
+
+/** Files of the points and weights of a reduced grid, float64, little endian. */
+export const reducedFiles = { point: "point.f64", weight: "weight.f64" } as const;
+
+const reducedArrays = {
+  point: { files: reducedFiles.point, type: "float64", axes: ["k", "direction"], unit: "1" },
+  weight: { files: reducedFiles.weight, type: "float64", axes: ["k"], unit: "1" },
+} as const;
+
+const reducedFields = ({ reduced }: GridDescription) =>
+  reduced === undefined ? {} : { points: reduced.points.length, symmetry: reduced.operations };
 
 /** What this program writes into `provenance.writer`, and looks for before it replaces a band grid. */
 export const writerName = "tidegauge";

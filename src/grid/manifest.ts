@@ -21,14 +21,30 @@ export const numberTypes = ["float32", "float64", "complex64", "complex128"] as 
 /** The axes an array may have. */
 export const axisNames = ["k", "band", "direction", "pair", "bra", "ket"] as const;
 
+/** Components of an array with directions, and of one with pairs of directions. */
+export const directionNames = ["x", "y", "z"] as const;
+export const pairNames = ["xx", "yy", "zz", "yz", "zx", "xy"] as const;
+
+/** An object that may have a `value` for each component. */
+function perComponent<T extends z.ZodType>(value: T) {
+  const one = value.optional();
+  return z.strictObject({ x: one, y: one, z: one, xx: one, yy: one, zz: one, yz: one, zx: one, xy: one });
+}
+
+const fileNames = z.union([
+  z.string().min(1).max(longest),
+  z.array(z.string().min(1).max(longest)).min(1).max(100_000),
+]);
+const digests = z.union([digest, z.array(digest)]);
+
 function arraySchema<T extends object>(units: T) {
   return z.strictObject({
-    files: z.union([z.string().min(1).max(longest), z.array(z.string().min(1).max(longest)).min(1).max(100_000)]),
+    files: z.union([...fileNames.options, perComponent(fileNames)]),
     type: z.enum(numberTypes),
     axes: z.array(z.enum(axisNames)).min(1).max(5),
     unit: z.enum(namesOf(units)),
     byteOrder: z.enum(["little", "big"]).default("little"),
-    sha256: z.union([digest, z.array(digest)]).optional(),
+    sha256: z.union([...digests.options, perComponent(digests)]).optional(),
   });
 }
 

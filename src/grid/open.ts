@@ -5,12 +5,15 @@ import { dataFault } from "../base/errors.js";
 import type { ArrayPlan } from "./arrays.js";
 import { factsOf, type ManifestFacts } from "./checks.js";
 import { manifestFault } from "./explain.js";
+import type { Reach } from "./files.js";
 import { combined, fingerprint } from "./fingerprint.js";
 import type { GridFacts, PatchCells, View } from "./grid.js";
 import { parseJson, quoted, readManifestBytes, reasonOf } from "./jsontext.js";
 import { type Manifest, manifestName, manifestSchema } from "./manifest.js";
 import { checkDisjoint, checkKinship, patchDirectory, patchMesh, readPatchCells } from "./patches.js";
 import { planArray } from "./plan.js";
+import { isReduced, openReduced } from "./reduced.js";
+import type { Unfolding } from "./stars.js";
 import { energyUnits, hessianUnits, momentUnits, velocityUnits } from "./units.js";
 import { viewFacts } from "./view.js";
 
@@ -21,6 +24,8 @@ export interface Grid {
   readonly arrays: readonly ArrayPlan[];
   /** Names of arrays whose slowest axis is not k: they are read in many small pieces. */
   readonly slowArrays: readonly string[];
+  /** How the full mesh is made of what is stored, where that is symmetry-reduced. */
+  readonly unfolding?: Unfolding | undefined;
   /** Finer data that replace cells of this grid's mesh; empty for a view and for a patch. */
   readonly patches: readonly Grid[];
   /** Whatever the manifest keeps under provenance. */
@@ -35,8 +40,21 @@ export interface Grid {
 export function openGrid(directory: string, view?: View): Grid {
   checkDirectory(directory);
   const bytes = readManifestBytes(join(directory, manifestName));
-  const manifest = parseManifest(bytes);
-  const alone = openArrays(directory, bytes, manifest, factsOf(manifest, manifestName));
+  return openManifest({ directory, bytes, where: manifestName, reach: "inside" }, view);
+}
+
+/** A manifest to be opened. `where` is its name in messages; `reach` says whether its files may lie outside `directory`. */
+export interface ManifestSource {
+  readonly directory: string;
+  readonly bytes: Uint8Array;
+  readonly where: string;
+  readonly reach: Reach;
+}
+
+/** As openGrid, with the manifest's bytes given. Only a manifest that the user typed may reach outside its directory. */
+export function openManifest({ directory, bytes, where, reach }: ManifestSource, view?: View): Grid {
+  const manifest = parseManifest(bytes, where);
+  const alone = openArrays(directory, bytes, manifest, factsOf(manifest, where), reach);
   // A sub-mesh is asked for to see how the mesh converges: patches would hide that.
   if (view !== undefined) return { ...alone, facts: viewFacts(alone.facts, view) };
   const patches = (manifest.patches ?? []).map((name) => openPatch(alone.facts, name));
@@ -49,11 +67,30 @@ export function openGrid(directory: string, view?: View): Grid {
 }
 
 /** A grid without its patches. */
-function openArrays(directory: string, bytes: Uint8Array, manifest: Manifest, facts: ManifestFacts): Grid {
-  const arrays = planArrays(directory, manifest, facts);
-  const size = arrays.flatMap((array) => array.files).reduce((sum, file) => sum + file.bytes, 0);
+function openArrays(
+  directory: string,
+  bytes: Uint8Array,
+  manifest: Manifest,
+  facts: ManifestFacts,
+  reach: Reach = "inside",
+): Grid {
+  const taken = new Map<string, string>();
+  const reduced = isReduced(manifest, manifestName)
+    ? openReduced(directory, manifest, facts, manifestName, taken)
+    : undefined;
+  const points = reduced?.unfolding.stored ?? facts.points;
+  const arrays = planArrays(directory, manifest, { ...facts, points }, { taken, reach });
+  const all = [...arrays, ...(reduced?.arrays ?? [])];
+  const size = all.flatMap((array) => array.files).reduce((sum, file) => sum + file.bytes, 0);
   return {
-    facts: { directory: resolve(directory), ...facts, sha256: fingerprint(bytes, arrays), bytes: size },
+    facts: {
+      directory: resolve(directory),
+      ...facts,
+      storedFlat: reduced?.unfolding.flatOf,
+      sha256: fingerprint(bytes, all),
+      bytes: size,
+    },
+    unfolding: reduced?.unfolding,
     arrays,
     slowArrays: arrays.filter((array) => array.axes[0] !== "k" && array.points > 1).map((array) => array.name),
     patches: [],
@@ -79,10 +116,10 @@ export function openPatch(parent: GridFacts, name: string): Grid {
 }
 
 /** The checked manifest in `bytes`; throws a data Fault for the first thing wrong with it. */
-export function parseManifest(bytes: Uint8Array): Manifest {
-  const value = parseJson(bytes, manifestName);
+export function parseManifest(bytes: Uint8Array, where: string = manifestName): Manifest {
+  const value = parseJson(bytes, where);
   const result = manifestSchema.safeParse(value);
-  if (!result.success) throw manifestFault(manifestSchema, value, result.error.issues, manifestName);
+  if (!result.success) throw manifestFault(manifestSchema, value, result.error.issues, where);
   return result.data;
 }
 
@@ -97,34 +134,38 @@ function checkDirectory(directory: string): void {
   if (!isDirectory) throw dataFault(`${quoted(directory)} is not a directory`, cure);
 }
 
-function planArrays(directory: string, manifest: Manifest, facts: ManifestFacts): ArrayPlan[] {
+function planArrays(
+  directory: string,
+  manifest: Manifest,
+  facts: ManifestFacts,
+  { taken, reach }: { readonly taken: Map<string, string>; readonly reach: Reach },
+): ArrayPlan[] {
   const { energy, velocity, moments, hessian } = manifest.arrays;
-  const { points, bands } = facts;
-  const taken = new Map<string, string>();
+  const common = { points: facts.points, bands: facts.bands, mesh: facts.divisions, reach };
   const plans = [
     planArray(
       directory,
       energy,
-      { name: "energy", role: "energy", points, bands, components: 1, factor: energyUnits[energy.unit] },
+      { name: "energy", role: "energy", ...common, components: 1, factor: energyUnits[energy.unit] },
       taken,
     ),
     planArray(
       directory,
       velocity,
-      { name: "velocity", role: "velocity", points, bands, components: 3, factor: velocityUnits[velocity.unit] },
+      { name: "velocity", role: "velocity", ...common, components: 3, factor: velocityUnits[velocity.unit] },
       taken,
     ),
   ];
   for (const moment of facts.moments) {
     const entry = moments[moment.name];
-    const request = { name: `moments.${moment.name}`, role: "moment" as const, points, bands };
+    const request = { name: `moments.${moment.name}`, role: "moment" as const, ...common };
     const shape = { components: moment.directions, factor: momentUnits[entry.unit] };
     plans.push(planArray(directory, entry, { ...request, ...shape }, taken));
   }
   if (typeof hessian === "object") {
     const factor = hessianUnits[hessian.unit];
     plans.push(
-      planArray(directory, hessian, { name: "hessian", role: "hessian", points, bands, components: 6, factor }, taken),
+      planArray(directory, hessian, { name: "hessian", role: "hessian", ...common, components: 6, factor }, taken),
     );
   }
   return plans;

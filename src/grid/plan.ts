@@ -1,6 +1,6 @@
 // plan.ts: do the files of one array hold exactly what its manifest entry says? Gives the plan for reading them.
 import { closeSync, openSync, readSync } from "node:fs";
-import { dataFault } from "../base/errors.js";
+import { dataFault, type Fault } from "../base/errors.js";
 import {
   type ArrayPlan,
   type ArrayRole,
@@ -13,7 +13,7 @@ import {
 } from "./arrays.js";
 import { type FoundFile, findFiles, type Reach, sameFile } from "./files.js";
 import { quoted, reasonOf } from "./jsontext.js";
-import type { ArrayEntry, Axis } from "./manifest.js";
+import { type ArrayEntry, type Axis, directionNames, pairNames } from "./manifest.js";
 import { isNpy, type NpyHeader, npyPrefixBytes, parseNpy } from "./npy.js";
 
 /** What planArray needs to know of an array beside its manifest entry. */
@@ -42,15 +42,63 @@ export function planArray(
   const { mesh, reach, ...request } = asked;
   checkType(entry, request);
   checkAxes(entry, request);
-  const found = findFiles(directory, `arrays.${request.name}`, entry.files, reach);
-  for (const file of found) {
-    const other = taken.get(file.identity);
-    if (other !== undefined) throw sameFile(`arrays.${request.name}`, other, file.name);
-  }
-  for (const file of found) taken.set(file.identity, file.name);
   const layout = { ...request, axes: entry.axes, type: entry.type, byteOrder: entry.byteOrder };
-  const files = placeFiles(layout, found, mesh);
-  return { ...layout, files, digests: digestsOf(entry, request.name, files.length) };
+  const place = (where: string, names: string | readonly string[], digests: Digests | undefined) => {
+    const found = findFiles(directory, where, names, reach);
+    for (const file of found) {
+      const other = taken.get(file.identity);
+      if (other !== undefined) throw sameFile(where, other, file.name);
+    }
+    for (const file of found) taken.set(file.identity, file.name);
+    return { files: placeFiles(layout, found, mesh), digests: digestsOf(digests, request.name, found.length) };
+  };
+  const { files, sha256 } = entry;
+  if (isPlain(files)) {
+    if (!(sha256 === undefined || isPlain(sha256))) throw digestsUnlikeFiles(request.name);
+    return { ...layout, ...place(`arrays.${request.name}`, files, sha256) };
+  }
+  if (sha256 !== undefined && isPlain(sha256)) throw digestsUnlikeFiles(request.name);
+  const parts = namedComponents(entry, request).map(([name, names], component) => {
+    const part = place(`arrays.${request.name}.files.${name}`, names, sha256?.[name]);
+    return { ...part, files: part.files.map((file) => ({ ...file, component })) };
+  });
+  const digests = parts.flatMap((part) => part.digests ?? []);
+  return {
+    ...layout,
+    files: parts.flatMap((part) => part.files),
+    digests: parts.some((part) => part.digests === undefined) ? undefined : digests,
+  };
+}
+
+type Digests = string | readonly string[];
+type ComponentName = (typeof directionNames | typeof pairNames)[number];
+
+/** True for what is given as a whole and not for each component. */
+function isPlain(value: object | string): value is string | string[] {
+  return typeof value === "string" || Array.isArray(value);
+}
+
+function digestsUnlikeFiles(name: string): Fault {
+  return dataFault(
+    `arrays.${name}: files and sha256 do not go together: one is given for each component, the other is not`,
+    "Give sha256 as files are given.",
+  );
+}
+
+/** The files of each component of an array that gives them so, in the components' order; exactly those of the array. */
+function namedComponents(entry: ArrayEntry, request: ArrayRequest): [ComponentName, string | string[]][] {
+  const expected = request.components === 1 ? [] : request.role === "hessian" ? pairNames : directionNames;
+  const where = `arrays.${request.name}.files`;
+  if (expected.length === 0)
+    throw dataFault(`${where} is given for components; this array has one only`, "Name its files directly.");
+  const files = entry.files as Partial<Record<ComponentName, string | string[]>>;
+  const found = Object.keys(files).filter((name) => files[name as ComponentName] !== undefined);
+  if (found.length !== expected.length || expected.some((name) => files[name] === undefined))
+    throw dataFault(
+      `${where} has ${found.length === 0 ? "no component" : found.join(", ")}; expected ${expected.join(", ")}`,
+      "Name the files of each component once, and nothing else.",
+    );
+  return expected.map((name) => [name, files[name] as string | string[]]);
 }
 
 function checkType(entry: ArrayEntry, request: ArrayRequest): void {
@@ -64,13 +112,14 @@ function checkType(entry: ArrayEntry, request: ArrayRequest): void {
 
 function checkAxes(entry: ArrayEntry, request: ArrayRequest): void {
   const component: Axis = request.role === "hessian" ? "pair" : "direction";
-  const full: Axis[] = request.role === "energy" ? ["k", "band"] : ["k", component, "bra", "ket"];
+  const split = !isPlain(entry.files) && request.components > 1;
+  const full: Axis[] = request.role === "energy" ? ["k", "band"] : ["k", ...(split ? [] : [component]), "bra", "ket"];
   const given = [...entry.axes].sort().join();
   if (given === [...full].sort().join()) return;
   // A scalar moment has one direction; its axis may be left out.
   if (request.components === 1 && given === "bra,k,ket") return;
   throw dataFault(
-    `arrays.${request.name}.axes is ${quoted(entry.axes)}: it must hold each of ${quoted(full)} once, in any order`,
+    `arrays.${request.name}.axes is ${quoted(entry.axes)}: it must hold each of ${quoted(full)} once, in any order${split ? `, without ${component}: its files are given for each component` : ""}`,
     "List the axes in the order in which the numbers lie in the file, slowest first.",
   );
 }
@@ -188,9 +237,9 @@ function checkHeader(plan: Layout, name: string, header: NpyHeader, points: numb
   }
 }
 
-function digestsOf(entry: ArrayEntry, name: string, files: number): string[] | undefined {
-  if (entry.sha256 === undefined) return undefined;
-  const digests = typeof entry.sha256 === "string" ? [entry.sha256] : entry.sha256;
+function digestsOf(given: Digests | undefined, name: string, files: number): string[] | undefined {
+  if (given === undefined) return undefined;
+  const digests = typeof given === "string" ? [given] : given;
   if (digests.length !== files) {
     throw dataFault(
       `arrays.${name}.sha256 holds ${digests.length} digests for ${files} files`,

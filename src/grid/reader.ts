@@ -2,22 +2,17 @@
 import ndarray from "ndarray";
 import { dataFault, usageFault } from "../base/errors.js";
 import { type ArrayPlan, elementBytes } from "./arrays.js";
-import { createScratch, energiesOf, matricesOf, type Scratch, stageBytes } from "./canonical.js";
-import type { Block, BlockReader, MatrixBlock, Want } from "./grid.js";
-import { createHandles, type Handles } from "./handles.js";
+import { createScratch, energiesOf, matricesOf } from "./canonical.js";
+import type { Block, BlockReader, GridFacts, MatrixBlock, Want } from "./grid.js";
+import { createHandles } from "./handles.js";
+import { load, type Source } from "./load.js";
 import type { Grid } from "./open.js";
-import { forEachPiece, type Stage, stageOf } from "./pieces.js";
+import { stageOf } from "./pieces.js";
+import { neededDirections, unfoldedReader } from "./unfolded.js";
 import { type Finding, verifyEnergies, verifyMatrices } from "./verify.js";
 import { storedFacts, viewReader } from "./view.js";
 
 export { type Grid, openGrid } from "./open.js";
-
-/** One array of a reader: which components of it are wanted (ascending), and the memory that it reads into. */
-interface Source {
-  readonly plan: ArrayPlan;
-  readonly components: readonly number[];
-  readonly scratch: Scratch;
-}
 
 /** Everything that the grid stores. */
 export function wantAll(grid: Grid): Want {
@@ -37,6 +32,8 @@ export function wantAll(grid: Grid): Want {
  */
 export function openReader(grid: Grid, want: Want): BlockReader {
   if (grid.facts.view !== undefined) return viewReader(openReader(storedGrid(grid), want), grid.facts);
+  if (grid.unfolding !== undefined)
+    return unfoldedReader(openReader(storedPart(grid), wholly(want, grid.facts)), grid.facts, grid.unfolding);
   const reader = openUncheckedReader(grid, want);
   const report = ({ message, cure }: Finding): never => {
     throw dataFault(message, cure);
@@ -56,6 +53,27 @@ export function openReader(grid: Grid, want: Want): BlockReader {
 
 /** The whole grid of which `grid` shows a sub-mesh. */
 const storedGrid = (grid: Grid): Grid => ({ ...grid, facts: storedFacts(grid.facts) });
+
+/** A reduced grid as what lies on disk: its stored points alone, in their order. Any other grid as it is. */
+export const storedPart = (grid: Grid): Grid =>
+  grid.unfolding === undefined
+    ? grid
+    : { ...grid, unfolding: undefined, facts: { ...grid.facts, points: grid.unfolding.stored } };
+
+/** Turning a point mixes directions: where one is wanted, all are read. */
+function wholly(want: Want, { moments }: GridFacts): Want {
+  const names = new Set(want.moments.map(({ name }) => name));
+  return {
+    ...want,
+    velocity: neededDirections(want.velocity, 3),
+    moments: [
+      ...moments
+        .filter(({ name }) => names.has(name))
+        .flatMap(({ name, directions }) => Array.from({ length: directions }, (_, direction) => ({ name, direction }))),
+      ...want.moments.filter(({ name }) => !moments.some((moment) => moment.name === name)),
+    ],
+  };
+}
 
 /** Calls `visit` for every matrix component that a block holds, in the order of the grid's arrays. */
 export function forEachMatrix(
@@ -83,6 +101,8 @@ function momentName(plan: ArrayPlan): string {
 /** As openReader, without looking at the numbers. */
 export function openUncheckedReader(grid: Grid, want: Want): BlockReader {
   if (grid.facts.view !== undefined) return viewReader(openUncheckedReader(storedGrid(grid), want), grid.facts);
+  if (grid.unfolding !== undefined)
+    return unfoldedReader(openUncheckedReader(storedPart(grid), wholly(want, grid.facts)), grid.facts, grid.unfolding);
   const sources = sourcesOf(grid, want);
   const handles = createHandles();
   const { facts } = grid;
@@ -124,24 +144,6 @@ function checkRange(first: number, count: number, points: number): void {
     `k points ${first} to ${first + count - 1} were asked for; the grid holds 0 to ${points - 1}`,
     "Ask for points that are stored.",
   );
-}
-
-/** Reads the bytes of a block of one array into its scratch. */
-function load(source: Source, handles: Handles, first: number, count: number): Stage {
-  const { plan, scratch } = source;
-  const stage = stageOf(plan, count, source.components);
-  // ndarray keeps offsets in 32 bits.
-  if (2 * stage.elements >= 2 ** 31) {
-    throw usageFault(
-      `a block of ${count} k points of arrays.${plan.name} is too large`,
-      "Read fewer k points at a time.",
-    );
-  }
-  const bytes = stageBytes(scratch, stage.elements * elementBytes[plan.type]);
-  forEachPiece(plan, stage, first, (file, filePosition, stagePosition, length) => {
-    handles.read(plan.name, file, filePosition, bytes, stagePosition, length);
-  });
-  return stage;
 }
 
 function sourcesOf(grid: Grid, want: Want): Source[] {

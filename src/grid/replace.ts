@@ -12,7 +12,7 @@ import {
 import { basename, dirname, join, resolve } from "node:path";
 import { type Fault, usageFault } from "../base/errors.js";
 import { quoted, readManifestBytes, reasonOf } from "./jsontext.js";
-import { writerName } from "./layout.js";
+import { reducedFiles, writerName } from "./layout.js";
 import { manifestName } from "./manifest.js";
 import { openGrid, parseManifest } from "./open.js";
 
@@ -49,7 +49,9 @@ function ownFiles(target: string, names: readonly string[], shown: string): void
     const { provenance } = parseManifest(readManifestBytes(join(target, manifestName)));
     const writer = typeof provenance === "object" && provenance !== null && "writer" in provenance && provenance.writer;
     if (writer !== writerName) throw taken(shown, "is a band grid that this program did not write");
-    allowed = new Set(openGrid(target).arrays.flatMap((array) => array.files.map((file) => file.name)));
+    const grid = openGrid(target);
+    allowed = new Set(grid.arrays.flatMap((array) => array.files.map((file) => file.name)));
+    if (grid.unfolding !== undefined) for (const name of Object.values(reducedFiles)) allowed.add(name);
   } catch (error) {
     if (error instanceof Error && error.message.includes("did not write")) throw error;
     throw taken(shown, "exists and holds a band grid that cannot be read");

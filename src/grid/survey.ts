@@ -2,7 +2,7 @@
 import { isFault } from "../base/errors.js";
 import type { ArrayPlan } from "./arrays.js";
 import type { Block } from "./grid.js";
-import { forEachMatrix, type Grid, openUncheckedReader, pointsPerBlock, wantAll } from "./reader.js";
+import { forEachMatrix, type Grid, openUncheckedReader, pointsPerBlock, storedPart, wantAll } from "./reader.js";
 import {
   componentName,
   type Finding,
@@ -73,7 +73,8 @@ interface Worst {
  * Scans all numbers of a grid in blocks of about 32 MB. Collects hard faults (not finite, not ascending, not Hermitian)
  * instead of throwing on the first; keeps at most `cap` of them and counts the rest.
  */
-export function surveyGrid(grid: Grid, onProgress?: Progress, cap = 20): Survey {
+export function surveyGrid(given: Grid, onProgress?: Progress, cap = 20): Survey {
+  const grid = storedPart(given);
   const { facts } = grid;
   const want = wantAll(grid);
   const step = pointsPerBlock(grid, want);

@@ -139,7 +139,7 @@ function finding(
   fault: Pick<Finding, "problem" | "component" | "bands">,
   values: string,
 ): Finding {
-  const mesh = meshIndices(facts.divisions, point);
+  const mesh = meshIndices(facts.divisions, facts.storedFlat?.[point] ?? point);
   const name = fault.component === undefined ? "" : componentName(plan, fault.component);
   const which = fault.bands.length === 1 ? `band ${fault.bands[0]}` : `bands ${fault.bands.join(", ")}`;
   const file = plan.files.find((part) => point < part.firstPoint + part.points)?.name ?? "";

@@ -12,6 +12,9 @@ import {
   manifestOf,
   type PlannedArray,
   planLayout,
+  pointsOf,
+  type ReducedPoints,
+  reducedFiles,
 } from "./layout.js";
 import { manifestName } from "./manifest.js";
 import { type Grid, openGrid, openPatch, parseManifest } from "./open.js";
@@ -76,6 +79,7 @@ export function createGridWriter(directory: string, description: GridDescription
     flush(facts, targets, state);
     targets.forEach(closeTarget);
     writeManifest(beside, description, targets, layout.sha256 === true);
+    if (description.reduced !== undefined) writeReduced(beside, description.reduced);
     if (description.patch !== undefined) writeAtomically(join(beside, cellsFile), cellBytes(description.patch.cells));
     // Opened where it is: a grid that cannot be read must not replace one that can.
     open(beside);
@@ -90,6 +94,18 @@ export function createGridWriter(directory: string, description: GridDescription
     removeFlat(beside);
   };
   return { add, finish, discard, written: () => state.written };
+}
+
+function writeReduced(directory: string, { points, weights }: ReducedPoints): void {
+  const write = (name: string, numbers: readonly number[]): void => {
+    const bytes = Buffer.alloc(8 * numbers.length);
+    numbers.forEach((x, i) => {
+      bytes.writeDoubleLE(x, 8 * i);
+    });
+    writeAtomically(join(directory, name), bytes);
+  };
+  write(reducedFiles.point, points.flat());
+  write(reducedFiles.weight, weights);
 }
 
 /** 32-bit little-endian whole numbers. */
@@ -119,7 +135,7 @@ function checkedFacts(directory: string, description: GridDescription, layout: G
   const named = patch && { ...patch, name: basename(directory) };
   const mesh = named && { ...patchMesh(description, named), patch: named };
   const facts = factsOf(parseManifest(Buffer.from(JSON.stringify(manifest))), "the grid to be written", mesh);
-  return { ...facts, directory, sha256: "", bytes: 0 };
+  return { ...facts, points: pointsOf(description), directory, sha256: "", bytes: 0 };
 }
 
 function blockPointsOf(planned: readonly PlannedArray[], points: number, bytes = defaultBlockBytes): number {

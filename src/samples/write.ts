@@ -1,6 +1,7 @@
 // write.ts: samples a model on a mesh and streams the matrices, in the eigenbasis of each k point, into a band grid.
 import { usageFault } from "../base/errors.js";
 import type { HessianKind, MomentFacts, PatchCells, Triple } from "../grid/grid.js";
+import type { ReducedPoints } from "../grid/layout.js";
 import type { Grid } from "../grid/open.js";
 import { patchMesh } from "../grid/patches.js";
 import { createGridWriter, type GridLayout } from "../grid/writer.js";
@@ -19,6 +20,8 @@ export interface WriteSampleOptions {
   readonly hessian?: boolean;
   /** Set to write a patch: `directory` then lies in a parent of these divisions and this offset, which is not changed. */
   readonly patch?: Omit<PatchCells, "name">;
+  /** Write these points of the mesh alone; see symmetry.ts. */
+  readonly reduced?: ReducedPoints;
   readonly layout?: GridLayout;
   readonly tags?: Readonly<Record<string, string | number | boolean>>;
   /** Kept in the manifest beside the model's source. */
@@ -56,8 +59,20 @@ export function writeSample(
   checkMesh(model, divisions, offset);
   const hessian = sampleHessian(model, options.hessian ?? true);
   const { title, vectorsA, periodic, bands, electronsPerBand, fermiEv, electrons } = model;
-  const { patch } = options;
-  const facts = { title, vectorsA, periodic, divisions, offset, patch, bands, electronsPerBand, fermiEv, electrons };
+  const { patch, reduced } = options;
+  const facts = {
+    title,
+    vectorsA,
+    periodic,
+    divisions,
+    offset,
+    patch,
+    reduced,
+    bands,
+    electronsPerBand,
+    fermiEv,
+    electrons,
+  };
   const writer = createGridWriter(
     options.directory,
     {
@@ -72,10 +87,10 @@ export function writeSample(
   const sample = createSampler(model, hessian);
   const reciprocal = reciprocalVectors(vectorsA);
   const mesh = { vectorsA, periodic, ...meshOf(divisions, offset, patch) };
-  const total = mesh.points;
+  const total = reduced?.points.length ?? mesh.points;
   try {
     for (let flat = 0; flat < total; flat++) {
-      writer.add(sample(cartesianK(fractionalK(flat, mesh), reciprocal)));
+      writer.add(sample(cartesianK(reduced?.points[flat] ?? fractionalK(flat, mesh), reciprocal)));
       const told = (flat + 1) % progressStep === 0 || flat + 1 === total;
       if (told && onProgress?.(flat + 1, total) === false) {
         writer.discard();

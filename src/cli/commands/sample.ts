@@ -11,6 +11,7 @@ import { buildSample, defaultMesh, sampleCatalogue, sampleNamed } from "../../sa
 import type { SampleModel } from "../../samples/model.js";
 import type { Sample } from "../../samples/parameter.js";
 import { writePatch } from "../../samples/patch.js";
+import { reducedPoints } from "../../samples/symmetry.js";
 import { writeSample } from "../../samples/write.js";
 import { type Context, type GlobalOptions, requiredOut } from "../context.js";
 import { checkRequested, readRequest } from "../requestfile.js";
@@ -44,6 +45,7 @@ const optionsSchema = z.object({
     .max(3, "expected two or three numbers")
     .optional(),
   request: z.string().min(1).optional(),
+  reduced: z.literal(true).optional(),
   set: z.array(z.string().regex(/^[^=]+=/, "expected NAME=VALUE")).default([]),
   tag: z.array(z.string().regex(/^[^=]+=/, "expected NAME=VALUE")).default([]),
 });
@@ -59,6 +61,7 @@ export function register(program: Command, context: Context): void {
     .option("--list", "print the models, or the parameters of the one that is named")
     .option("--mesh <N...>", "divisions of the mesh along b1, b2 (and b3)")
     .option("--offset <X...>", "where the mesh starts, in mesh steps, each from 0 to below 1")
+    .option("--reduced", "write one point of every star alone, with the group that makes the others")
     .option("--request <FILE>", "write the cells that a request.json names, as a patch inside the grid of this model")
     .option("--set <NAME=VALUE...>", "parameters of the model; they are also written as tags of the grid")
     .option("--tag <NAME=VALUE...>", "more tags of the grid, e.g. strain_percent=-1 (see tidegauge series)")
@@ -124,7 +127,8 @@ function write(name: string, options: Options, globals: GlobalOptions, { termina
   const task = progress("writing");
   try {
     const tags = tagsOf([...options.set, ...options.tag]);
-    const grid = writeSample(model, { directory, divisions, offset, tags }, (done, total) => {
+    const reduced = options.reduced ? reducedPoints(model, { ...model, divisions, offset }) : undefined;
+    const grid = writeSample(model, { directory, divisions, offset, reduced, tags }, (done, total) => {
       task.advance(done, total);
       return true;
     });
@@ -144,7 +148,10 @@ function write(name: string, options: Options, globals: GlobalOptions, { termina
         bytes,
         sha256,
       });
-    else terminal.print(`${directory}: ${cleanLine(title)}; ${grouped(points)} k points of ${bands} bands`);
+    else
+      terminal.print(
+        `${directory}: ${cleanLine(title)}; ${grouped(facts.storedFlat?.length ?? points)} k points of ${bands} bands${facts.storedFlat === undefined ? "" : `, which make the ${grouped(points)} of the mesh`}`,
+      );
   } finally {
     task.end();
   }
