@@ -35,7 +35,7 @@ export const locateOptions = z.strictObject({
   level: z.number().min(-1000).max(1000).default(0),
   temperature: z.array(z.number().min(0).max(100000)).length(1, { error: "expected one temperature" }).default([300]),
   /** Cells listed for each response. */
-  cells: z.int().min(1).max(100_000).default(200),
+  cells: z.int().min(1).max(100_000).default(100),
   /** Centre and two directions of the map. */
   plane: z.string().max(400).optional(),
   /** Places of the map along each direction. */

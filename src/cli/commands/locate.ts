@@ -50,7 +50,7 @@ export function register(program: Command, context: Context): void {
       .argument("<GRID>", "directory of a band grid"),
     { axis: "level", from: "0", temperature: "300" },
   )
-    .option("--cells <N>", "cells listed in the files for each response (default 200)")
+    .option("--cells <N>", "cells listed in the files for each response (default 100)")
     .option("--plane <K>", 'the map: "centre / direction / direction" in b1, b2, b3 (default "0 0 0 / 1 0 0 / 0 1 0")')
     .option("--map-points <N>", "places of the map along each direction (default 61)")
     .option("--path <K>", 'corners of a path, "0 0 0 / 0.5 0.5 0 / ..."')

@@ -11,6 +11,8 @@ import { edgePx, type Placed, titleAt } from "./surroundings.js";
 import { type Scale, type Sheet, scaleAt, sharedScale, sheetAt } from "./zone-map.js";
 
 const widthPx = 760;
+/** Room for the half of the last corner's label that reaches beyond the panels. */
+const labelPx = 30;
 /** Energies shown about the level, eV. */
 const bandsReachEv = 1.5;
 
@@ -107,7 +109,7 @@ export function locateMapSvg(result: LocateResult): string {
   const whole = sheetsAt(result, projectionSheet, plane.bottomPx + 10);
   const foot = footer(
     result,
-    "Colours: what the response would be if all of the zone were like that place; linear below the smallest mark of the scale, logarithmic above.",
+    "Colours: what the response would be if all of the zone were like that place; linear about zero, logarithmic further out; the darkest also stand for more.",
     whole.bottomPx,
   );
   return pictureSvg({
@@ -150,7 +152,7 @@ export function locatePathSvg(result: LocateResult): string {
   const panels = pathPanels(result);
   for (const [i, panel] of panels.entries())
     parts.push(
-      panelAt(lengths, panel, widthPx, bottomPx() + 14, `locate-path-${i + 1}`, {
+      panelAt(lengths, panel, widthPx - labelPx, bottomPx() + 14, `locate-path-${i + 1}`, {
         levelTicks: i === panels.length - 1,
         ticks,
       }),

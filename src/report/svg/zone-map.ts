@@ -15,7 +15,7 @@ export interface Sheet {
 
 /** Steps of the scale to either side of zero. */
 const steps = 9;
-/** Colours span so many decades; below the smallest they are linear. */
+/** Colours span at most so many decades, and not much less than the usual place needs; below that they are linear. */
 const decades = 3;
 
 /** Linear about zero up to `smallest`, logarithmic up to `largest`. */
@@ -32,7 +32,9 @@ export function sharedScale(values: readonly number[]): Scale {
     .sort((a, b) => a - b);
   const largest = sizes[Math.min(sizes.length - 1, Math.floor(0.995 * sizes.length))] ?? 0;
   const top = largest > 0 ? largest : (sizes[sizes.length - 1] ?? 0);
-  return { largest: top > 0 ? top : 1, smallest: (top > 0 ? top : 1) / 10 ** decades };
+  if (!(top > 0)) return { largest: 1, smallest: 1 };
+  const usual = sizes[Math.floor(sizes.length / 2)];
+  return { largest: top, smallest: Math.min(top, Math.max(usual, top / 10 ** decades)) };
 }
 
 /** -steps .. steps. */
@@ -115,8 +117,9 @@ export function scaleAt(scale: Scale, unit: string, x: number, topPx: number, wi
     const step = i - steps;
     return `<rect x="${short(x + i * each)}" y="${topPx}" width="${short(each + 0.3)}" height="12" fill="${diverging(step / steps)}"/>`;
   });
-  const marks = [-1, -1 / 30, 0, 1 / 30, 1].map((part) => {
-    const value = part * scale.largest;
+  const inner = Math.sqrt(scale.smallest * scale.largest);
+  const ends = scale.smallest < scale.largest / 3 ? [-scale.largest, -inner] : [-scale.largest];
+  const marks = [...ends, 0, ...ends.map((value) => -value).reverse()].map((value) => {
     const place = x + barPx / 2 + stepOf(value, scale) * each;
     return textLine(plain(value, 2), Number(short(place)), topPx + 26, {
       sizePx: 11,
