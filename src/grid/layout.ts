@@ -1,7 +1,15 @@
 // layout.ts: how a band grid that is being written is laid out: manifest entries, file names, pieces, from a short description.
 import { join } from "node:path";
 import { usageFault } from "../base/errors.js";
-import { type ArrayPlan, type ArrayRole, bytesPerPoint, type FilePlan, isComplex } from "./arrays.js";
+import {
+  type ArrayPlan,
+  type ArrayRole,
+  bytesPerPoint,
+  componentNamesOf,
+  type FilePlan,
+  isComplex,
+  isSplit,
+} from "./arrays.js";
 import type { HessianKind, MomentFacts, PatchCells, Triple } from "./grid.js";
 import { type ArrayEntry, type Axis, formatName, type NumberType } from "./manifest.js";
 import { pointsPerCell } from "./patches.js";
@@ -47,6 +55,8 @@ export interface ArrayLayout {
   readonly unit?: string;
   readonly byteOrder?: "little" | "big";
   readonly container?: "raw" | "npy";
+  /** Writes files of its own for each component; the axes have no direction or pair then. */
+  readonly split?: boolean;
   /** Number of files that the k points are shared out to. */
   readonly pieces?: number;
 }
@@ -114,11 +124,13 @@ function planRole(directory: string, description: GridDescription, role: Role, l
   if (factor === undefined) {
     throw usageFault(`${role.name} has no unit ${unit}`, `Use ${Object.keys(role.units).join(", ")}.`);
   }
-  const axes = [...(layout.axes ?? role.axes)];
+  const splits = layout.split === true && role.components > 1;
+  const roleAxes = splits ? role.axes.filter((axis) => axis !== "direction" && axis !== "pair") : role.axes;
+  const axes = [...(layout.axes ?? roleAxes)];
   const type = layout.type ?? (role.role === "energy" ? "float64" : "complex128");
   if (role.role === "energy" && isComplex(type)) throw usageFault("energies are real", "Use float64 or float32.");
-  if ([...axes].sort().join() !== [...role.axes].sort().join()) {
-    throw usageFault(`${role.name} has the axes ${role.axes.join(", ")}`, "Name each of them once, in any order.");
+  if ([...axes].sort().join() !== [...roleAxes].sort().join()) {
+    throw usageFault(`${role.name} has the axes ${roleAxes.join(", ")}`, "Name each of them once, in any order.");
   }
   const points = pointsOf(description);
   const { bands } = description;
@@ -126,10 +138,28 @@ function planRole(directory: string, description: GridDescription, role: Role, l
   const shape = { name: role.name, role: role.role, axes, points, bands, components: role.components };
   const stored = { type, byteOrder, factor, digests: undefined };
   const container = layout.container ?? "raw";
-  const files = sharedOut({ ...shape, type }, directory, container, layout.pieces ?? 1);
+  const pieces = { container, count: layout.pieces ?? 1 };
+  const files = splits
+    ? componentNamesOf(shape).flatMap((name, component) =>
+        sharedOut({ ...shape, type }, directory, pieces, `-${name}`).map((file) => ({ ...file, component })),
+      )
+    : sharedOut({ ...shape, type }, directory, pieces, "");
   const plan = { ...shape, ...stored, files };
-  const names = files.map((file) => file.name);
-  return { plan, container, entry: { files: names.length === 1 ? names[0] : names, type, axes, unit, byteOrder } };
+  const names = byComponent(
+    plan,
+    files.map((file) => file.name),
+  );
+  return { plan, container, entry: { files: names, type, axes, unit, byteOrder } };
+}
+
+type Texts = string | string[];
+
+/** One text for each file of an array, as a manifest's entry gives them: one, a list, or either for each component. */
+function byComponent(plan: ArrayPlan, texts: readonly string[]): Texts | Record<string, Texts> {
+  const oneOrAll = (some: readonly string[]): Texts => (some.length === 1 ? some[0] : [...some]);
+  if (!isSplit(plan)) return oneOrAll(texts);
+  const of = (component: number) => texts.filter((_, file) => plan.files[file].component === component);
+  return Object.fromEntries(componentNamesOf(plan).map((name, component) => [name, oneOrAll(of(component))]));
 }
 
 const suffixes: Record<NumberType, string> = { float32: "f32", float64: "f64", complex64: "c64", complex128: "c128" };
@@ -137,13 +167,13 @@ const suffixes: Record<NumberType, string> = { float32: "f32", float64: "f64", c
 function sharedOut(
   plan: Omit<ArrayPlan, "files" | "byteOrder" | "factor" | "digests">,
   directory: string,
-  container: "raw" | "npy",
-  pieces: number,
+  { container, count: pieces }: { readonly container: "raw" | "npy"; readonly count: number },
+  part: string,
 ): FilePlan[] {
   if (!Number.isInteger(pieces) || pieces < 1 || pieces > plan.points) {
     throw usageFault(`${plan.name} cannot be shared out to ${pieces} files`, `Use 1 to ${plan.points}.`);
   }
-  const base = plan.name.replace("moments.", "moment-");
+  const base = plan.name.replace("moments.", "moment-") + part;
   const suffix = container === "npy" ? "npy" : suffixes[plan.type];
   return Array.from({ length: pieces }, (_, piece) => {
     const firstPoint = Math.floor((piece * plan.points) / pieces);
@@ -167,9 +197,11 @@ export function manifestOf(
   digests: ReadonlyMap<string, readonly string[]>,
 ): Record<string, unknown> {
   const entryOf = (name: string): Record<string, unknown> | undefined => {
-    const entry = arrays.find((array) => array.plan.name === name)?.entry;
+    const array = arrays.find(({ plan }) => plan.name === name);
     const sha256 = digests.get(name);
-    return entry === undefined || sha256 === undefined ? entry : { ...entry, sha256 };
+    return array === undefined || sha256 === undefined
+      ? array?.entry
+      : { ...array.entry, sha256: byComponent(array.plan, sha256) };
   };
   const moments = description.moments.map(({ name, kind, underTimeReversal }): [string, unknown] => [
     name,

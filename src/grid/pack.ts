@@ -19,6 +19,8 @@ export interface PackChanges {
   readonly precision?: "single" | "double" | undefined;
   /** Order of the matrices' axes, slowest first; `direction` stands for the hessian's `pair` too. k, direction, bra, ket where left out. */
   readonly order?: readonly Axis[] | undefined;
+  /** Writes files of its own for every direction or pair: what is not asked for is not read. */
+  readonly split?: boolean;
   /** Writes a SHA-256 of every file into the manifest. */
   readonly digests?: boolean;
 }
@@ -33,7 +35,7 @@ export interface PackWatch {
 const blockBytes = 16 * 1024 * 1024;
 
 /**
- * Writes `source` and its patches to `directory` as raw little-endian files, one for each array, and opens the result, which appears
+ * Writes `source` and its patches to `directory` as raw little-endian files, one for each array or component, and opens the result, which appears
  * whole or not at all. A symmetry-reduced grid becomes the full mesh. Every number reads back bit by bit unless `precision` narrows it.
  * Throws the Faults of reader and writer; an "interrupted" Fault after a signal.
  */
@@ -159,17 +161,14 @@ const widened: Record<NumberType, NumberType> = {
 };
 
 /** Type, unit and axes of a packed array. */
-function arrayLayout(plan: ArrayPlan, { precision, order }: PackChanges): ArrayLayout {
+function arrayLayout(plan: ArrayPlan, { precision, order, split = false }: PackChanges): ArrayLayout {
   const isEnergy = plan.role === "energy";
   const keeps = precision === undefined || (isEnergy && precision === "single");
   const type = keeps ? plan.type : (precision === "single" ? narrowed : widened)[plan.type];
   // Numbers of 32 bits times a unit's factor have more digits than 32 bits: they stay in their unit, all others go to the canonical one.
   const staysSingle = narrowed[plan.type] === plan.type && type === plan.type;
-  return {
-    type,
-    ...(staysSingle ? unitOf(plan) : {}),
-    ...(isEnergy || order === undefined ? {} : axesOf(plan, order)),
-  };
+  const form = isEnergy ? {} : { split, ...(order === undefined ? {} : { axes: axesOf(plan, order, split) }) };
+  return { type, ...(staysSingle ? unitOf(plan) : {}), ...form };
 }
 
 function unitOf(plan: ArrayPlan): { unit?: string } {
@@ -178,6 +177,7 @@ function unitOf(plan: ArrayPlan): { unit?: string } {
   return plan.factor === 1 || unit === undefined ? {} : { unit };
 }
 
-function axesOf({ role }: ArrayPlan, order: readonly Axis[]): { axes: Axis[] } {
-  return { axes: order.map((axis) => (axis === "direction" && role === "hessian" ? "pair" : axis)) };
+function axesOf({ role, components }: ArrayPlan, order: readonly Axis[], split: boolean): Axis[] {
+  const kept = split && components > 1 ? order.filter((axis) => axis !== "direction") : order;
+  return kept.map((axis) => (axis === "direction" && role === "hessian" ? "pair" : axis));
 }

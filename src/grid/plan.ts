@@ -63,11 +63,9 @@ export function planArray(
     return { ...part, files: part.files.map((file) => ({ ...file, component })) };
   });
   const digests = parts.flatMap((part) => part.digests ?? []);
-  return {
-    ...layout,
-    files: parts.flatMap((part) => part.files),
-    digests: parts.some((part) => part.digests === undefined) ? undefined : digests,
-  };
+  const all = parts.flatMap((part) => part.files);
+  if (sha256 !== undefined && digests.length !== all.length) throw digestsUnlikeFiles(request.name);
+  return { ...layout, files: all, digests: sha256 === undefined ? undefined : digests };
 }
 
 type Digests = string | readonly string[];
@@ -80,7 +78,7 @@ function isPlain(value: object | string): value is string | string[] {
 
 function digestsUnlikeFiles(name: string): Fault {
   return dataFault(
-    `arrays.${name}: files and sha256 do not go together: one is given for each component, the other is not`,
+    `arrays.${name}: sha256 is not given for the same components as files`,
     "Give sha256 as files are given.",
   );
 }

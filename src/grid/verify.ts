@@ -1,6 +1,6 @@
 // verify.ts: are the numbers of a block what they claim: finite, ascending, Hermitian? One pass over each matrix.
 
-import type { ArrayPlan } from "./arrays.js";
+import { type ArrayPlan, componentNamesOf } from "./arrays.js";
 import type { Block, GridFacts, MatrixBlock } from "./grid.js";
 import { firstNotFinite, type MatrixScan, scanMatrix, worstElement } from "./hermitian.js";
 
@@ -36,13 +36,9 @@ export function meshIndices(divisions: readonly number[], point: number): [numbe
   return [Math.floor(plane / divisions[1]), plane % divisions[1], point % divisions[2]];
 }
 
-const directionNames = ["x", "y", "z"];
-const pairNames = ["xx", "yy", "zz", "yz", "zx", "xy"];
-
 /** Name of a component of an array: "x", "yz"; empty where there is one only. */
 export function componentName(plan: Pick<ArrayPlan, "role" | "components">, component: number): string {
-  if (plan.components === 1) return "";
-  return plan.role === "hessian" ? pairNames[component] : directionNames[component];
+  return componentNamesOf(plan)[component];
 }
 
 /** Checks [k][band] energies. */
@@ -142,7 +138,8 @@ function finding(
   const mesh = meshIndices(facts.divisions, facts.storedFlat?.[point] ?? point);
   const name = fault.component === undefined ? "" : componentName(plan, fault.component);
   const which = fault.bands.length === 1 ? `band ${fault.bands[0]}` : `bands ${fault.bands.join(", ")}`;
-  const file = plan.files.find((part) => point < part.firstPoint + part.points)?.name ?? "";
+  const ofComponent = plan.files.filter((part) => part.component === undefined || part.component === fault.component);
+  const file = ofComponent.find((part) => point < part.firstPoint + part.points)?.name ?? "";
   return {
     array: plan.name,
     ...fault,

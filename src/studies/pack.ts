@@ -15,6 +15,8 @@ const matrixAxes = ["k", "direction", "bra", "ket"] as const;
 export const packOptions = z.strictObject({
   /** Width of the matrices' numbers; as they are where left out. */
   precision: z.enum(["single", "double"]).optional(),
+  /** Files of its own for every direction of a matrix array. */
+  split: z.boolean().default(false),
   /** Order of the matrices' axes, slowest first. */
   order: z
     .array(z.enum(matrixAxes))

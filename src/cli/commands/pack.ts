@@ -29,6 +29,8 @@ Examples:
       makes the grid "gold" from the arrays, and inspects it at once; data/bringing-data.md says what to ask of a calculation
   tidegauge pack gold --precision single --out gold-single
       half the size; single precision is enough for the matrices, and energies stay as they are
+  tidegauge pack gold --split --digests --out gold-split
+      one file for each direction of a matrix, and a SHA-256 of every file
   tidegauge pack from-fortran --out canonical
       any order of axes, byte order and number of files becomes one little-endian file for each array, k slowest; every number
       reads back bit by bit, patches come along, and a symmetry-reduced grid becomes the full mesh
@@ -44,6 +46,7 @@ export function register(program: Command, context: Context): void {
     .argument("[GRID]", "a band grid to pack again")
     .option("--from <FACTS.json>", "describes arrays to make a grid from")
     .option("--precision <WIDTH>", "single or double: width of the numbers; as they are where left out")
+    .option("--split", "one file for each direction: a response then reads only what it needs")
     .option("--order <AXIS...>", "order of the matrices' axes, slowest first (default k direction bra ket)")
     .option("--digests", "write a SHA-256 of every file into the manifest")
     .option("--check", "inspect the result at once")
