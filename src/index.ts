@@ -25,6 +25,8 @@ export type { ConvergeResult } from "./studies/converge-result.js";
 export { type DopeOptions, dope, dopeOptions } from "./studies/dope.js";
 export type { DopeResult } from "./studies/dope-result.js";
 export { inspect, inspectOptions } from "./studies/inspect.js";
+export { type LocateOptions, locate, locateOptions } from "./studies/locate.js";
+export type { LocateResult } from "./studies/locate-result.js";
 export { type SeriesOptions, series, seriesOptions } from "./studies/series.js";
 export type { SeriesResult } from "./studies/series-result.js";
 export { type SweepOptions, sweep, sweepOptions } from "./studies/sweep.js";

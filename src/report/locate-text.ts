@@ -9,6 +9,8 @@ const pairsShown = 6;
 const cellsShown = 8;
 /** Contributions that differ by less than this part of themselves are alike. */
 const alike = 0.01;
+/** A value, or a pair's part, below this share of all contributions is what round-off leaves of contributions that cancel. */
+const cancelled = 1e-9;
 /** Contributions against the value's sign that are told as a matter of its own, in parts of all magnitudes. */
 const cancelling = 0.02;
 
@@ -51,21 +53,29 @@ export function answer(result: LocateResult, response: LocatedResponse): string 
   const all = positive - negative;
   if (all === 0) return `${start} Nothing contributes to it at this level.`;
   const most = concentration.find(({ share }) => share === 0.8) ?? concentration[0];
+  const part = `${percent(most.zone)} of the zone makes ${percent(most.share)}`;
+  if (Math.abs(positive + negative) < cancelled * all)
+    return `${start} Contributions of both signs cancel, ${plain(positive, 4)} and ${plain(negative, 4)}; ${part} of them, sizes added.`;
   const against = Math.min(positive, -negative) / all;
   const mixed = against > cancelling;
   const where = mixed
-    ? `${percent(most.zone)} of the zone makes ${percent(most.share)} of all contributions, sizes added; they are of both signs, ${plain(positive, 4)} and ${plain(negative, 4)}, and this part gives ${plain(most.net, 4)} net.`
-    : `${percent(most.zone)} of the zone makes ${percent(most.share)} of it.`;
+    ? `${part} of all contributions, sizes added; they are of both signs, ${plain(positive, 4)} and ${plain(negative, 4)}, and this part gives ${plain(most.net, 4)} net.`
+    : `${part} of it.`;
   const [first] = pairs;
   const pair =
-    first === undefined || first.contribution === 0
+    first === undefined || Math.abs(first.contribution) < cancelled * all
       ? ""
       : ` The pair of bands ${setWords(result.sets, first.lower)} and ${setWords(result.sets, first.upper)} gives most, ${plain(first.contribution, 4)}.`;
   return `${start} ${where}${pair}`;
 }
 
-function pairTable(result: LocateResult, { pairs, value }: LocatedResponse): string {
-  const rows = pairs
+/** Pairs that give more than round-off. */
+const pairsOf = ({ pairs, positive, negative }: LocatedResponse): LocatedResponse["pairs"] =>
+  pairs.filter(({ contribution }) => Math.abs(contribution) >= cancelled * (positive - negative));
+
+function pairTable(result: LocateResult, response: LocatedResponse): string {
+  const { value } = response;
+  const rows = pairsOf(response)
     .slice(0, pairsShown)
     .map(({ lower, upper, contribution, cumulated }) => [
       `${setWords(result.sets, lower)} / ${setWords(result.sets, upper)}`,
@@ -134,17 +144,22 @@ const signWords = (cosine: number): string =>
 
 /** Whether two responses come from the same crossings. */
 export function overlapWords({ a, b, ...each }: Overlap): string {
-  return (
-    `${cleanLine(a)} and ${cleanLine(b)} come from ${graded(each.cells_common)} cells (${percent(each.cells_common)} in common, ${signWords(each.cells_cosine)}: cosine ${plain(each.cells_cosine, 2)}) ` +
-    `and ${graded(each.pairs_common)} pairs of bands (${percent(each.pairs_common)} in common, cosine ${plain(each.pairs_cosine, 2)}).`
-  );
+  const cells =
+    `${cleanLine(a)} and ${cleanLine(b)} come from ${graded(each.cells_common)} cells ` +
+    `(${percent(each.cells_common)} in common, ${signWords(each.cells_cosine)}: cosine ${cosine(each.cells_cosine)})`;
+  if (each.pairs_common === 0) return `${cells}; no pair of bands gives anything net to both.`;
+  return `${cells} and ${graded(each.pairs_common)} pairs of bands (${percent(each.pairs_common)} in common, cosine ${cosine(each.pairs_cosine)}).`;
 }
+
+/** To two decimals. */
+const cosine = (value: number): string => String(Math.abs(value) < 0.005 ? 0 : Number(value.toFixed(2)));
 
 /** The text of a location; `width` in columns. Ends with a newline. */
 export function locateText(result: LocateResult, { width }: { readonly width: number }): string {
   const blocks = result.responses.flatMap((response) => [
     wrapped(answer(result, response), width),
-    ...(response.positive === response.negative ? [] : [pairTable(result, response), cellTable(result, response)]),
+    ...(response.positive === response.negative || pairsOf(response).length === 0 ? [] : [pairTable(result, response)]),
+    ...(response.positive === response.negative ? [] : [cellTable(result, response)]),
   ]);
   const overlap = result.overlap
     .filter((each) => each.cells_common > 0)

@@ -20,6 +20,9 @@ import { computeSweep } from "./sweep.js";
 import { planSweep, type SweepPlan, sweepOptions, unitOf } from "./sweep-plan.js";
 import { assembleResult } from "./sweep-result.js";
 
+/** Of a sum of contributions of both signs that cancel this part may be left. */
+const roundOff = 1e-9;
+
 const { response, method, accuracy, samples, degenerate, broaden, unit } = sweepOptions.shape;
 
 /** Options of `locate`: those of a sweep at one level and temperature, and where to look. */
@@ -160,13 +163,16 @@ function partsOf(
 ) {
   const count = responses.length;
   const sets = setOf[setOf.length - 1] + 1;
-  return responses.map(({ name, pairs }, r) => {
+  return responses.map(({ name, pairs, positive, negative }, r) => {
     const cells = Float64Array.from(
       { length: main.length / count },
       (_, cell) => main[cell * count + r] + correction[cell * count + r],
     );
     const bySets = new Float64Array(sets * sets);
-    for (const { lower, upper, contribution } of pairs) bySets[lower * sets + upper] = contribution;
+    // What round-off leaves of pairs that cancel throughout the zone has nothing in common with anything.
+    const least = roundOff * (positive - negative);
+    for (const { lower, upper, contribution } of pairs)
+      if (Math.abs(contribution) > least) bySets[lower * sets + upper] = contribution;
     return { name, cells, pairs: bySets };
   });
 }
