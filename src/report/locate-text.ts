@@ -51,7 +51,7 @@ export function answer(result: LocateResult, response: LocatedResponse): string 
   const [name, unit] = [cleanLine(response.name), cleanLine(response.unit)];
   const start = `${name} is ${withError(value, error)} ${unit}.`;
   const all = positive - negative;
-  if (all === 0) return `${start} Nothing contributes to it at this level.`;
+  if (response.vanishes) return `${start} No place in the zone contributes to it at this level (more than round-off).`;
   const most = concentration.find(({ share }) => share === 0.8) ?? concentration[0];
   const part = `${percent(most.zone)} of the zone makes ${percent(most.share)}`;
   if (Math.abs(positive + negative) < cancelled * all)
@@ -158,8 +158,8 @@ const cosine = (value: number): string => String(Math.abs(value) < 0.005 ? 0 : N
 export function locateText(result: LocateResult, { width }: { readonly width: number }): string {
   const blocks = result.responses.flatMap((response) => [
     wrapped(answer(result, response), width),
-    ...(response.positive === response.negative || pairsOf(response).length === 0 ? [] : [pairTable(result, response)]),
-    ...(response.positive === response.negative ? [] : [cellTable(result, response)]),
+    ...(response.vanishes || pairsOf(response).length === 0 ? [] : [pairTable(result, response)]),
+    ...(response.vanishes ? [] : [cellTable(result, response)]),
   ]);
   const overlap = result.overlap
     .filter((each) => each.cells_common > 0)

@@ -22,6 +22,9 @@ export interface Found {
   readonly sections: Sections;
 }
 
+/** Contributions whose sizes add up to no more than this zone mean, angstrom^2, are round-off. */
+const nothing = 1e-9;
+
 /** Everything that is known of the zone at the level. */
 export interface WholeZone {
   readonly grid: Grid;
@@ -171,6 +174,7 @@ export function locatedResponse(
     correction: perCell * corrected,
     positive: perCell * plus,
     negative: perCell * minus,
+    vanishes: positive - negative < nothing * points,
     concentration: sharesTold.map((share) => {
       const { volume, net } = smallestPart(sections["locate.shares"], response, share);
       return { share, zone: volume / points, net: perCell * net };

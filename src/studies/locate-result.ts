@@ -66,6 +66,8 @@ export interface LocatedResponse {
   /** Sums of the positive and of the negative contributions of boxes, before correction. */
   positive: number;
   negative: number;
+  /** Nothing but round-off contributes anywhere: the response vanishes place by place. */
+  vanishes: boolean;
   concentration: Concentration[];
   /** Largest magnitude first. */
   cells: LocatedCell[];

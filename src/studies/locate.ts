@@ -163,16 +163,15 @@ function partsOf(
 ) {
   const count = responses.length;
   const sets = setOf[setOf.length - 1] + 1;
-  return responses.map(({ name, pairs, positive, negative }, r) => {
-    const cells = Float64Array.from(
-      { length: main.length / count },
-      (_, cell) => main[cell * count + r] + correction[cell * count + r],
+  return responses.map(({ name, pairs, positive, negative, vanishes }, r) => {
+    const cells = Float64Array.from({ length: main.length / count }, (_, cell) =>
+      vanishes ? 0 : main[cell * count + r] + correction[cell * count + r],
     );
     const bySets = new Float64Array(sets * sets);
     // What round-off leaves of pairs that cancel throughout the zone has nothing in common with anything.
     const least = roundOff * (positive - negative);
     for (const { lower, upper, contribution } of pairs)
-      if (Math.abs(contribution) > least) bySets[lower * sets + upper] = contribution;
+      if (!vanishes && Math.abs(contribution) > least) bySets[lower * sets + upper] = contribution;
     return { name, cells, pairs: bySets };
   });
 }

@@ -36,6 +36,12 @@ function footer(result: LocateResult, more: string, topPx: number): Placed {
   return { markup: `<g class="footer">${markup.join("")}</g>`, bottomPx: topPx + 16 + 15 * lines.length };
 }
 
+/** Responses that something contributes to; all where nothing contributes to any. */
+function shown({ responses }: LocateResult): readonly LocatedResponse[] {
+  const some = responses.filter(({ vanishes }) => !vanishes);
+  return some.length > 0 ? some : responses;
+}
+
 const titleWords = (result: LocateResult, what: string): string =>
   `${cleanLine(result.grid.title)}${result.grid.title === "" ? "" : ": "}${what}`;
 
@@ -78,8 +84,8 @@ function sheetsAt(
   const each = (widthPx - 2 * edgePx - gapPx) / 2;
   const parts: Placed[] = [];
   let bottom = topPx;
-  for (const unit of new Set(result.responses.map((response) => response.unit))) {
-    const own = result.responses.filter((response) => response.unit === unit);
+  for (const unit of new Set(shown(result).map((response) => response.unit))) {
+    const own = shown(result).filter((response) => response.unit === unit);
     const sheets = own.map((response) => sheetOf(result, response));
     const scale: Scale = sharedScale(sheets.flatMap(({ rows }) => rows.flat()));
     for (let i = 0; i < own.length; i += 2) {
@@ -115,7 +121,9 @@ export function locateMapSvg(result: LocateResult): string {
   return pictureSvg({
     id: "locate-map",
     title,
-    described: `The integrand of ${result.responses.map(({ name }) => cleanLine(name)).join(", ")} in a plane, and its mean along b3.`,
+    described: `The integrand of ${shown(result)
+      .map(({ name }) => cleanLine(name))
+      .join(", ")} in a plane, and its mean along b3.`,
     widthPx,
     parts: [head, ...plane.parts, ...whole.parts, foot],
   });
@@ -123,7 +131,7 @@ export function locateMapSvg(result: LocateResult): string {
 
 /** Bands near the level, and below them each response along the path. */
 function pathPanels(result: LocateResult): Panel[] {
-  const { path, responses, grid, level_eV: level } = result;
+  const { path, grid, level_eV: level } = result;
   const [colour] = temperatureColours(1);
   const near = (energy: number): number => (Math.abs(energy - level) <= bandsReachEv ? energy - level : Number.NaN);
   const bands = Array.from({ length: grid.bands }, (_, band) => ({
@@ -132,7 +140,7 @@ function pathPanels(result: LocateResult): Panel[] {
   })).filter(({ value }) => value.some(Number.isFinite));
   return [
     { words: "Bands", name: "energy from the level", unit: "eV", heightPx: 240, traces: bands },
-    ...responses.map((response) => ({
+    ...shown(result).map((response) => ({
       words: quantityWords(response.name),
       name: `${cleanLine(response.name)} if all of the zone were like here`,
       unit: unitInPicture(response.unit),
@@ -161,7 +169,9 @@ export function locatePathSvg(result: LocateResult): string {
   return pictureSvg({
     id: "locate-path",
     title,
-    described: `Bands, and ${result.responses.map(({ name }) => cleanLine(name)).join(", ")}, along a path.`,
+    described: `Bands, and ${shown(result)
+      .map(({ name }) => cleanLine(name))
+      .join(", ")}, along a path.`,
     widthPx,
     parts,
   });
