@@ -112,8 +112,13 @@ function examine(directory: string, name: string, entry: Fields, component: Axis
     );
   const filled = { type, ...(order === ">" ? { byteOrder: "big" } : {}), axes };
   const missing = ["type", "axes"].filter((field) => entry[field] === undefined);
-  const words = missing.map((field) => (field === "type" ? `type ${type}` : `axes ${axes.join(", ")}`));
-  const said = words.length === 0 ? [] : [`arrays.${name}: ${words.join("; ")} (from the header of ${file})`];
+  const indices = header.fortranOrder ? [...axes].reverse() : axes;
+  const words = missing.map((field) =>
+    field === "type"
+      ? `type ${type} (from the header of ${file})`
+      : `indices ${indices.join(", ")} (assumed${header.fortranOrder ? "; stored in Fortran order" : ""})`,
+  );
+  const said = words.length === 0 ? [] : [`arrays.${name}: ${words.join("; ")}`];
   return { file, axes, header, files: files.length, filled, said };
 }
 

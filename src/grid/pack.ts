@@ -3,14 +3,16 @@ import { rmSync } from "node:fs";
 import { join } from "node:path";
 import { Fault } from "../base/errors.js";
 import type { ArrayPlan } from "./arrays.js";
-import type { Block, GridFacts, MatrixBlock } from "./grid.js";
-import type { ArrayLayout, GridDescription, GridLayout } from "./layout.js";
+import type { Block, GridFacts, MatrixBlock, Triple } from "./grid.js";
+import type { ArrayLayout, GridDescription, GridLayout, ReducedPoints } from "./layout.js";
 import { listPatch } from "./list-patch.js";
 import type { Axis, NumberType } from "./manifest.js";
 import { type Grid, openGrid } from "./open.js";
-import { openReader, pointsPerBlock, wantAll } from "./reader.js";
+import { openReader, pointsPerBlock, storedPart, wantAll } from "./reader.js";
 import { checkTarget, makeBeside, putInPlace } from "./replace.js";
+import type { Unfolding } from "./stars.js";
 import { energyUnits, hessianUnits, momentUnits, velocityUnits } from "./units.js";
+import { meshIndices } from "./verify.js";
 import { createGridWriter, type PointData } from "./writer.js";
 
 /** What is to change beside the form. What is left out stays as it is. */
@@ -21,6 +23,8 @@ export interface PackChanges {
   readonly order?: readonly Axis[] | undefined;
   /** Writes files of its own for every direction or pair: what is not asked for is not read. */
   readonly split?: boolean;
+  /** Writes the full mesh of a symmetry-reduced grid, which stays reduced otherwise. */
+  readonly full?: boolean;
   /** Writes a SHA-256 of every file into the manifest. */
   readonly digests?: boolean;
 }
@@ -36,7 +40,7 @@ const blockBytes = 16 * 1024 * 1024;
 
 /**
  * Writes `source` and its patches to `directory` as raw little-endian files, one for each array or component, and opens the result, which appears
- * whole or not at all. A symmetry-reduced grid becomes the full mesh. Every number reads back bit by bit unless `precision` narrows it.
+ * whole or not at all. Every number reads back bit by bit unless `precision` narrows it.
  * Throws the Faults of reader and writer; an "interrupted" Fault after a signal.
  */
 export async function packGrid(
@@ -48,10 +52,13 @@ export async function packGrid(
   const destination = checkTarget(directory);
   const beside = makeBeside(destination);
   const made = join(beside, "grid");
-  const total = source.patches.reduce((sum, patch) => sum + patch.facts.points, source.facts.points);
+  const reduced = source.unfolding !== undefined && changes.full !== true ? source.unfolding : undefined;
+  const main = reduced === undefined ? source : storedPart(source);
+  const total = source.patches.reduce((sum, patch) => sum + patch.facts.points, main.facts.points);
   let before = 0;
   const copy = async (grid: Grid, to: string): Promise<void> => {
-    const description = descriptionOf(grid, source.facts);
+    const stored = grid === main && reduced !== undefined ? { reduced: reducedPoints(reduced, source.facts) } : {};
+    const description = { ...descriptionOf(grid, source.facts), ...stored };
     await copyGrid(grid, to, description, layoutOf(grid, changes), {
       ...watch,
       onProgress: (done) => watch.onProgress?.(before + done, total),
@@ -59,7 +66,7 @@ export async function packGrid(
     before += grid.facts.points;
   };
   try {
-    await copy(source, made);
+    await copy(main, made);
     for (const patch of source.patches) {
       const name = packedPatchName(patch);
       await copy(patch, join(made, name));
@@ -70,6 +77,22 @@ export async function packGrid(
     rmSync(beside, { recursive: true, force: true });
   }
   return openGrid(directory);
+}
+
+/** The stored points of a reduced grid as the writer takes them: on their mesh, each with its part of the mesh's points. */
+function reducedPoints({ operations, stored, storedOf, flatOf }: Unfolding, mesh: GridFacts): ReducedPoints {
+  const counts = new Array<number>(stored).fill(0);
+  for (const point of storedOf) counts[point]++;
+  const fractional = (flat: number): Triple => {
+    const indices = meshIndices(mesh.divisions, flat);
+    const along = (j: 0 | 1 | 2): number => (indices[j] + mesh.offset[j]) / mesh.divisions[j];
+    return [along(0), along(1), along(2)];
+  };
+  return {
+    operations: operations.map(({ rotation, timeReversal }) => ({ rotation, timeReversal })),
+    points: Array.from(flatOf, fractional),
+    weights: counts.map((count) => count / storedOf.length),
+  };
 }
 
 /** A patch lies directly in its packed parent: levels of directories in its name become dashes. */

@@ -139,7 +139,7 @@ function placeFiles(plan: Layout, found: readonly FoundFile[], mesh: readonly nu
     // The header first: a wrong type explains a wrong length better than the length does.
     if (header !== undefined) {
       const points = whole ? plan.points : Math.floor(bytes / perPoint);
-      checkHeader(plan, file.name, whole ? withFlatMesh(header, plan, mesh) : header, points);
+      checkHeader(plan, file.name, header, points, whole ? mesh : undefined);
     }
     if (whole) checkWhole(plan, file.name, bytes);
     else if (bytes <= 0 || bytes % perPoint !== 0) {
@@ -214,7 +214,13 @@ function withFlatMesh(header: NpyHeader, plan: Layout, mesh: readonly number[] |
   return { ...header, shape: [...header.shape.slice(0, at), flat, ...header.shape.slice(at + spelled)] };
 }
 
-function checkHeader(plan: Layout, name: string, header: NpyHeader, points: number): void {
+function checkHeader(
+  plan: Layout,
+  name: string,
+  header: NpyHeader,
+  points: number,
+  mesh: readonly number[] | undefined,
+): void {
   const where = `arrays.${plan.name}: the .npy header of ${quoted(name)}`;
   const type = npyType(plan.type, plan.byteOrder);
   if (header.descr !== type) {
@@ -225,11 +231,12 @@ function checkHeader(plan: Layout, name: string, header: NpyHeader, points: numb
   }
   const expected = plan.axes.map((axis) => axisSize(plan, axis, points));
   // In Fortran order the first index of the shape runs fastest; `axes` is slowest first.
-  const shape = header.fortranOrder ? [...header.shape].reverse() : header.shape;
+  const shape = header.fortranOrder ? [...header.shape].reverse() : withFlatMesh(header, plan, mesh).shape;
   if (shape.length !== expected.length || shape.some((size, index) => size !== expected[index])) {
     const order = header.fortranOrder ? " in Fortran order, slowest first" : "";
+    const said = header.fortranOrder ? shape : header.shape;
     throw dataFault(
-      `${where} says shape (${shape.join(", ")})${order}; expected (${expected.join(", ")}) = (${plan.axes.join(", ")})`,
+      `${where} says shape (${said.join(", ")})${order}; expected (${expected.join(", ")}) = (${plan.axes.join(", ")})`,
       "Make axes in the manifest agree with the order in which the numbers lie in the file.",
     );
   }

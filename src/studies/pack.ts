@@ -24,6 +24,8 @@ export const packOptions = z.strictObject({
       error: "expected each of k, direction, bra, ket once",
     })
     .optional(),
+  /** Unfold a symmetry-reduced grid to its full mesh. */
+  full: z.boolean().default(false),
   /** Write a SHA-256 of every file into the manifest. */
   digests: z.boolean().default(false),
   /** Inspect the result at once. */
@@ -87,9 +89,10 @@ function notesOf(source: Grid, packed: Grid): string[] {
     notes.push(
       `${narrowed.map(({ name }) => name).join(", ")}: kept to 24 bits, about 7 digits; energies stay as they are`,
     );
-  const stored = source.arrays[0].points;
-  if (stored !== packed.facts.points)
-    notes.push(`${stored} stored points were unfolded to the full mesh of ${packed.facts.points}`);
+  const [was, is] = [source.arrays[0].points, packed.arrays[0].points];
+  if (was !== is) notes.push(`${was} stored points were unfolded to the full mesh of ${is}`);
+  else if (is !== packed.facts.points)
+    notes.push(`symmetry-reduced: ${is} points are stored of a mesh of ${packed.facts.points}; --full writes them all`);
   if (packed.slowArrays.length > 0)
     notes.push(`${packed.slowArrays.join(", ")}: k is not the slowest axis, so these are read in many small pieces`);
   return notes;

@@ -33,7 +33,7 @@ Examples:
       one file for each direction of a matrix, and a SHA-256 of every file
   tidegauge pack from-fortran --out canonical
       any order of axes, byte order and number of files becomes one little-endian file for each array, k slowest; every number
-      reads back bit by bit, patches come along, and a symmetry-reduced grid becomes the full mesh
+      reads back bit by bit, and patches come along
 
 An existing --out is replaced only where it is a band grid that this program wrote, and only when the new one is complete.
 Exit status 3 when the data have a hard fault: the grid is then not written, or, with --check, written and named unsound.`;
@@ -48,6 +48,7 @@ export function register(program: Command, context: Context): void {
     .option("--precision <WIDTH>", "single or double: width of the numbers; as they are where left out")
     .option("--split", "one file for each direction: a response then reads only what it needs")
     .option("--order <AXIS...>", "order of the matrices' axes, slowest first (default k direction bra ket)")
+    .option("--full", "write the full mesh of a symmetry-reduced grid, which stays reduced otherwise")
     .option("--digests", "write a SHA-256 of every file into the manifest")
     .option("--check", "inspect the result at once")
     .addHelpText("after", examples);
