@@ -91,11 +91,17 @@ interface Seen {
 
 const types: Record<string, NumberType> = { f4: "float32", f8: "float64", c8: "complex64", c16: "complex128" };
 
+/** The first component's file names of an entry; undefined where it has none that could be looked for. */
+function namesOf({ files }: Fields): string[] | undefined {
+  const named = isFields(files) ? Object.values(files)[0] : files;
+  const names: unknown = typeof named === "string" ? [named] : named;
+  return Array.isArray(names) && names.every((each): each is string => typeof each === "string") ? names : undefined;
+}
+
 /** Undefined where the files are raw numbers, or the entry is too broken to be looked into: the schema will say how. */
 function examine(directory: string, name: string, entry: Fields, component: Axis | undefined): Seen | undefined {
-  const named = isFields(entry.files) ? Object.values(entry.files)[0] : entry.files;
-  const names = typeof named === "string" ? [named] : named;
-  if (!Array.isArray(names) || !names.every((each): each is string => typeof each === "string")) return undefined;
+  const names = namesOf(entry);
+  if (names === undefined) return undefined;
   const files = findFiles(directory, `arrays.${name}`, names, "anywhere");
   const header = files.length === 0 ? undefined : headerOf(name, files[0]);
   if (header === undefined) return undefined;
@@ -139,7 +145,12 @@ function axesOf(name: string, file: string, header: NpyHeader, full: readonly Ax
 }
 
 function sizesOf(facts: Fields, energy: Seen | undefined, inferred: string[]): Fields {
-  if (facts.bands !== undefined || energy === undefined) return {};
+  if (facts.bands !== undefined) return {};
+  if (energy === undefined) {
+    const entry = isFields(facts.arrays) ? facts.arrays.energy : undefined;
+    // Where the energies' entry is what is wrong, that is to be said, and not that bands is missing.
+    return isFields(entry) && namesOf(entry) !== undefined ? {} : { bands: 1 };
+  }
   const shape = energy.header.fortranOrder ? [...energy.header.shape].reverse() : energy.header.shape;
   // Counted from the end: k may be spelled out before it.
   const fromEnd = energy.axes.length - energy.axes.indexOf("band");
