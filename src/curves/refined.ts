@@ -141,7 +141,7 @@ const samplerOf = (sections: Sections, name: string, { axis, columns, reading }:
 
 /**
  * What the models got wrong and the neighbours did not mend: the difference to the same calculation on a contained mesh of
- * `stride` times the step, scaled by 1 / (stride^3 - 1); without such a mesh a part of the neighbour defect.
+ * `stride` times the step, scaled by 1 / (stride^order - 1); without such a mesh a part of the neighbour defect.
  */
 function modelSquares(sections: Sections, facts: RefinedFacts, reading: Reading): Squares {
   const { axis, columns, points, subMeshes } = facts;

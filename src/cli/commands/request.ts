@@ -3,6 +3,7 @@ import type { Command } from "commander";
 import { resultJson } from "../../report/json.js";
 import { requestCsv } from "../../report/request-csv.js";
 import { requestText } from "../../report/request-text.js";
+import { requestSvg } from "../../report/svg/request.js";
 import { request, requestOptions } from "../../studies/request.js";
 import type { Context, GlobalOptions } from "../context.js";
 import { checkedOut, deliverFiles } from "../delivery.js";
@@ -50,6 +51,7 @@ export function register(program: Command, context: Context): void {
       [
         ["request.csv", requestCsv(result)],
         ["request.json", resultJson(result)],
+        ["request.svg", requestSvg(result)],
       ],
       terminal,
     );
