@@ -51,7 +51,12 @@ export function completeFacts(path: string): CompletedFacts {
       }),
     );
   if (arrays.hessian !== undefined) completed.hessian = complete("hessian", arrays.hessian, "pair");
-  const whole = { format: formatName, ...sizesOf(facts, energy, inferred), ...facts, arrays: completed };
+  const whole = {
+    format: formatName,
+    ...sizesOf(facts, energy, inferred),
+    ...facts,
+    arrays: isFields(facts.arrays) ? completed : facts.arrays,
+  };
   const mesh = meshOf(facts, energy, inferred);
   const bytes = Buffer.from(JSON.stringify(mesh === undefined ? whole : { ...whole, mesh }));
   return { source: { directory, bytes, where, reach: "anywhere" }, inferred };
