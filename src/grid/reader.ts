@@ -8,6 +8,7 @@ import { createHandles } from "./handles.js";
 import { load, type Source } from "./load.js";
 import type { Grid } from "./open.js";
 import { stageOf } from "./pieces.js";
+import { checkRange } from "./range.js";
 import { neededDirections, unfoldedReader } from "./unfolded.js";
 import { type Finding, verifyEnergies, verifyMatrices } from "./verify.js";
 import { storedFacts, viewReader } from "./view.js";
@@ -135,15 +136,6 @@ export function openUncheckedReader(grid: Grid, want: Want): BlockReader {
     },
     close: () => handles.close(),
   };
-}
-
-function checkRange(first: number, count: number, points: number): void {
-  const whole = Number.isInteger(first) && Number.isInteger(count);
-  if (whole && first >= 0 && count >= 1 && first + count <= points) return;
-  throw usageFault(
-    `k points ${first} to ${first + count - 1} were asked for; the grid holds 0 to ${points - 1}`,
-    "Ask for points that are stored.",
-  );
 }
 
 function sourcesOf(grid: Grid, want: Want): Source[] {

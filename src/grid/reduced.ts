@@ -1,4 +1,5 @@
 // reduced.ts: the parts of a manifest that make a symmetry-reduced grid: which points are stored, and how do they unfold?
+import { createHash } from "node:crypto";
 import { dataFault } from "../base/errors.js";
 import type { ArrayPlan } from "./arrays.js";
 import { createScratch, energiesOf } from "./canonical.js";
@@ -76,7 +77,6 @@ export function openReduced(
   const points = manifest.points ?? 0;
   const { point, weight } = manifest.arrays;
   if (point === undefined || weight === undefined) throw new Error("a reduced grid was taken for one");
-  const operations = checkedGroup(manifest.symmetry ?? [], facts.vectorsA, where);
   const plans = [
     planNumbers(directory, point, "point", { points, columns: 3, axes: ["k", "direction"] }, taken),
     planNumbers(directory, weight, "weight", { points, columns: 1, axes: ["k"] }, taken),
@@ -87,5 +87,17 @@ export function openReduced(
     const [name, i] = bad < 3 * points ? ["point", Math.floor(bad / 3)] : ["weight", bad - 3 * points];
     throw dataFault(`${where}: arrays.${name} of point ${i} is not a finite number`, "Write it again.");
   }
-  return { unfolding: unfold(fractions, weights, operations, facts, where), arrays: plans };
+  const { vectorsA, divisions, offset } = facts;
+  const symmetry = manifest.symmetry ?? [];
+  const key = createHash("sha256")
+    .update(JSON.stringify([symmetry, vectorsA, divisions, offset, where]))
+    .update(fractions)
+    .update(weights)
+    .digest("hex");
+  if (last?.key !== key)
+    last = { key, unfolding: unfold(fractions, weights, checkedGroup(symmetry, vectorsA, where), facts, where) };
+  return { unfolding: last.unfolding, arrays: plans };
 }
+
+/** What was unfolded last, by its content: every task of a job opens the same grid. */
+let last: { readonly key: string; readonly unfolding: Unfolding } | undefined;

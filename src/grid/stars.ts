@@ -53,6 +53,12 @@ export function unfold(
 ): Unfolding {
   const total = mesh.divisions[0] * mesh.divisions[1] * mesh.divisions[2];
   const stored = weights.length;
+  // Before memory is taken for a mesh that a manifest only claims.
+  if (total > stored * operations.length)
+    throw dataFault(
+      `${where}: ${stored} points under ${operations.length} operations make at most ${stored * operations.length} of the ${total} mesh points`,
+      "Write the missing points, or list the whole group.",
+    );
   const storedOf = new Int32Array(total).fill(-1);
   const operationOf = new Uint16Array(total);
   const flatOf = new Int32Array(stored);

@@ -58,11 +58,12 @@ const isClose = (a: Rows, b: Rows): boolean =>
 
 const identity = built((i, j) => (i === j ? 1 : 0));
 
-const same = (a: Operation, b: Operation): boolean =>
-  a.timeReversal === b.timeReversal && isClose(a.rotation, b.rotation);
+/** The same for equal operations of one lattice, and for no others. */
+const keyOf = ({ action, timeReversal }: Pick<KOperation, "action" | "timeReversal">): string =>
+  `${timeReversal} ${action.join(" ")}`;
 
-const composed = (a: Operation, b: Operation): Operation => ({
-  rotation: productOf(a.rotation, b.rotation),
+const composed = (a: KOperation, b: KOperation): Pick<KOperation, "action" | "timeReversal"> => ({
+  action: productOf(a.action, b.action),
   timeReversal: a.timeReversal !== b.timeReversal,
 });
 
@@ -84,25 +85,43 @@ export function checkedGroup(
   vectorsA: Rows,
   where: string,
 ): readonly KOperation[] {
+  const indexOf = new Map<string, number>();
   const operations = listed.map((entry, i) => {
     const { rotation } = entry;
     if (!isClose(productOf(rotation, transposed(rotation)), identity))
       throw dataFault(`${where}: symmetry[${i}].rotation is not orthogonal`, cure);
     const operation = kOperation(entry, vectorsA);
     if (operation === undefined) throw dataFault(`${where}: symmetry[${i}] does not map the lattice to itself`, cure);
-    const twin = listed.findIndex((other, j) => j < i && same(other, entry));
-    if (twin >= 0) throw dataFault(`${where}: symmetry[${i}] is symmetry[${twin}] once more`, cure);
+    const twin = indexOf.get(keyOf(operation));
+    if (twin !== undefined) throw dataFault(`${where}: symmetry[${i}] is symmetry[${twin}] once more`, cure);
+    indexOf.set(keyOf(operation), i);
     return operation;
   });
-  if (!operations.some(({ rotation, timeReversal }) => !timeReversal && isClose(rotation, identity)))
+  if (!indexOf.has(keyOf({ action: identity, timeReversal: false })))
     throw dataFault(`${where}: symmetry lacks the identity`, cure);
-  for (const [i, a] of operations.entries())
-    for (const [j, b] of operations.entries()) {
-      const product = composed(a, b);
-      if (!operations.some((each) => same(each, product)))
-        throw dataFault(`${where}: symmetry is no group: symmetry[${i}] after symmetry[${j}] is not in the list`, cure);
-    }
+  checkClosed(operations, indexOf, where);
   return operations;
+}
+
+/**
+ * Throws a data Fault where a product of operations is not among them. Every operation is a product of generators, taken from the
+ * list as they are needed: the list is closed if it is closed under these.
+ */
+function checkClosed(operations: readonly KOperation[], indexOf: ReadonlyMap<string, number>, where: string): void {
+  const products: number[][] = [];
+  const reached = new Set([indexOf.get(keyOf({ action: identity, timeReversal: false })) ?? 0]);
+  for (const j of operations.keys()) {
+    if (reached.has(j)) continue;
+    const after = operations.map((a, i) => {
+      const product = indexOf.get(keyOf(composed(a, operations[j])));
+      if (product === undefined)
+        throw dataFault(`${where}: symmetry is no group: symmetry[${i}] after symmetry[${j}] is not in the list`, cure);
+      return product;
+    });
+    products.push(after);
+    // A set that is walked while it grows: every operation reached is multiplied by every generator so far.
+    for (const i of reached) for (const of of products) reached.add(of[i]);
+  }
 }
 
 const transposed = (m: Rows): Rows => built((i, j) => m[j][i]);

@@ -1,5 +1,7 @@
 // unfolded.ts: reads a reduced grid as the full mesh: every point's matrices turned from those of its star's stored point.
 import type { Block, BlockReader, GridFacts, MatrixBlock, MomentFacts } from "./grid.js";
+import { createKeeper } from "./kept.js";
+import { checkRange } from "./range.js";
 import type { Unfolding } from "./stars.js";
 import { determinant, type KOperation, type Rows } from "./symmetry.js";
 
@@ -66,6 +68,7 @@ export function unfoldedReader(
 ): BlockReader {
   const turnings = operations.map((operation) => turningOf(operation, facts));
   const size = 2 * facts.bands ** 2;
+  const pointOf = createKeeper(stored);
   const memory = new Map<string, Float64Array>();
   const memoryOf = (key: string, count: number): Float64Array => {
     const known = memory.get(key);
@@ -89,13 +92,14 @@ export function unfoldedReader(
   return {
     facts,
     read(first, count) {
+      checkRange(first, count, storedOf.length);
       const energyEv = new Float64Array(count * facts.bands);
       let made: Omit<Block, "first" | "count" | "energyEv"> | undefined;
       for (let i = 0; i < count; i++) {
-        const block = stored.read(storedOf[first + i], 1);
+        const block = pointOf(storedOf[first + i]);
         const { velocity, hessian, moments, conjugate } = turnings[operationOf[first + i]];
         const at = { index: i, count };
-        energyEv.set(block.energyEv.subarray(0, facts.bands), i * facts.bands);
+        energyEv.set(block.energyEv, i * facts.bands);
         made = {
           bands: facts.bands,
           velocity: block.velocity[0] ? turnAll("velocity", block.velocity, velocity, conjugate, at) : block.velocity,
@@ -121,15 +125,25 @@ function mix(
   conjugate: boolean,
   out: Float64Array,
 ): void {
-  out.fill(0);
   const sign = conjugate ? -1 : 1;
+  // Most operations of a crystal take one component to one other: the first term is written, not added.
+  let isFirst = true;
   for (const [component, factor] of factors.entries()) {
     const matrix = from[component];
     if (factor === 0 || matrix === undefined) continue;
     const { data, offset } = matrix;
-    for (let i = 0; i < out.length; i += 2) {
-      out[i] += factor * data[offset + i];
-      out[i + 1] += sign * factor * data[offset + i + 1];
-    }
+    const imaginary = sign * factor;
+    if (isFirst)
+      for (let i = 0; i < out.length; i += 2) {
+        out[i] = factor * data[offset + i];
+        out[i + 1] = imaginary * data[offset + i + 1];
+      }
+    else
+      for (let i = 0; i < out.length; i += 2) {
+        out[i] += factor * data[offset + i];
+        out[i + 1] += imaginary * data[offset + i + 1];
+      }
+    isFirst = false;
   }
+  if (isFirst) out.fill(0);
 }
