@@ -35,6 +35,12 @@ const orders: readonly { readonly places: readonly number[]; readonly words: str
 const secondOf = ({ seconds, step, axis }: BendEquation, places: readonly number[]): number =>
   step.reduce((sum, s, a) => sum + s * seconds[places[pairIndex(a, axis)]], 0);
 
+/** What the order of the differences changes: what the mesh leaves open of an equation. A misfit of the data themselves is no part of it. */
+const coarseness = (e: BendEquation): number =>
+  Number.isNaN(e.coarse)
+    ? 0.3 * Math.abs(e.change)
+    : Math.abs(e.coarse - (e.change - e.pairs - secondOf(e, orders[0].places)));
+
 interface SecondFit {
   readonly factor: number;
   readonly left: number;
@@ -47,7 +53,7 @@ function fitSecond(equations: readonly BendEquation[], places: readonly number[]
     equations.reduce((sum, { change, pairs }) => sum + change ** 2 + pairs ** 2, 0) / Math.max(1, equations.length);
   let [rr, rx, xx, all] = [0, 0, 0, 0];
   for (const equation of equations) {
-    const w = 1 / (equation.error ** 2 + 1e-3 * scale);
+    const w = 1 / (equation.error ** 2 + coarseness(equation) ** 2 + 1e-3 * scale);
     const r = equation.change - equation.pairs;
     const x = secondOf(equation, places);
     rr += w * r * r;
@@ -62,13 +68,30 @@ function fitSecond(equations: readonly BendEquation[], places: readonly number[]
 const measured =
   "effective-mass sum rule: d/dk of sum phi_n v_nn by differences on the mesh against sum phi_n <n|d2H|n> plus 2 sum |v|^2 / (E_n - E_m), in windows of energy";
 
-/** Compares the change of the velocity with second derivatives and sums over bands. `agree`: velocities and energies agree. */
-export function checkBends(
-  { bends }: Equations,
-  bandCount: number,
-  agree: boolean,
-  freeElectron: boolean,
-): BendVerdict {
+/** What is known of the grid. */
+export interface BendFacts {
+  readonly bandCount: number;
+  /** Velocities and energies agree. */
+  readonly agree: boolean;
+  /** The second derivative is declared to be that of a free electron. */
+  readonly freeElectron: boolean;
+  /** Reference level, eV; undefined where the grid states none. */
+  readonly levelEv: number | undefined;
+}
+
+/** What is known of the grid. */
+export interface BendFacts {
+  readonly bandCount: number;
+  /** Velocities and energies agree. */
+  readonly agree: boolean;
+  /** The second derivative is declared to be that of a free electron. */
+  readonly freeElectron: boolean;
+  /** Reference level, eV; undefined where the grid states none. */
+  readonly levelEv: number | undefined;
+}
+
+/** Compares the change of the velocity with second derivatives and sums over bands. */
+export function checkBends({ bends }: Equations, { bandCount, agree, freeElectron, levelEv }: BendFacts): BendVerdict {
   const own = resolved(bends).filter(({ band }) => band !== undefined);
   if (!agree || own.length < 6) return { findings: [], bands: [], trustedEv: null };
   const bands = completeness(own);
@@ -76,13 +99,16 @@ export function checkBends(
   const equations = deep.length >= 6 ? deep : own;
   const stated = fitSecond(equations, orders[0].places);
   const trustedEv = trustedUpTo(bands, bandCount);
-  if (stated.leftAsStated < cleanPart / 2) return { findings: partly(bands, trustedEv), bands, trustedEv };
+  if (stated.leftAsStated < cleanPart / 2) return { findings: partly(bands, trustedEv, levelEv), bands, trustedEv };
   const fits = orders.map((order) => ({ order, fit: fitSecond(equations, order.places) }));
   const best = fits.reduce((a, b) => (b.fit.left < a.fit.left - 0.005 ? b : a));
   const renamed = best.order.words !== "" || Math.abs(best.fit.factor - 1) > 0.15;
   if (renamed && best.fit.left < 0.02 && best.fit.left < 0.15 * stated.leftAsStated && !freeElectron)
     return { findings: [hessianFinding(best.order.words, best.fit, stated)], bands: [], trustedEv: null };
-  return { findings: [openFinding(bands, stated, trustedEv, freeElectron)], bands, trustedEv };
+  if (trustedEv === null || trustedEv === Infinity) return { findings: [], bands, trustedEv };
+  const fromBelow = trustedEv >= bands[0].energyEv;
+  const findings = fromBelow ? partly(bands, trustedEv, levelEv) : [openFinding(bands, stated, freeElectron)];
+  return { findings, bands, trustedEv };
 }
 
 function hessianFinding(order: string, fit: SecondFit, stated: SecondFit): HealthFinding {
@@ -103,18 +129,19 @@ function hessianFinding(order: string, fit: SecondFit, stated: SecondFit): Healt
   };
 }
 
-function openFinding(
-  bands: readonly BandCompleteness[],
-  stated: SecondFit,
-  trustedEv: number | null,
-  freeElectron: boolean,
-): HealthFinding {
-  const worst = bands.map(({ band, missing }) => `${band}: ${shown(100 * missing, 2)}%`).join(", ");
+const byBand = (bands: readonly BandCompleteness[]): string =>
+  bands.map(({ band, missing }) => `${band}: ${shown(100 * missing, 2)}%`).join(", ");
+
+/** Nothing closes, from the lowest band on. */
+function openFinding(bands: readonly BandCompleteness[], stated: SecondFit, freeElectron: boolean): HealthFinding {
+  const reason = freeElectron
+    ? "a free-electron second derivative where it does not hold (tight binding, non-local potentials)"
+    : "wrong second derivatives";
   return {
     id: "completeness",
     severity: "warn",
-    message: `velocities, second derivatives and the mesh do not close${trustedEv === null || bands.length === 0 || trustedEv < bands[0].energyEv ? "" : ` above ${trustedEv.toFixed(2)} eV`}: too few bands, ${freeElectron ? "a free-electron second derivative where it does not hold (tight binding, non-local potentials)" : "wrong second derivatives"}, or components of the velocity from different diagonalisations`,
-    evidence: `${shown(100 * stated.leftAsStated)}% of the squared changes are left; missing part of the sum over bands, by band: ${worst}`,
+    message: `velocities, second derivatives and the mesh do not close at any band: ${reason}, too few bands, or components of the velocity from different diagonalisations`,
+    evidence: `${shown(100 * stated.leftAsStated)}% of the squared changes are left; missing part of the sum over bands, by band: ${byBand(bands)}`,
     measured,
     cure: freeElectron
       ? "Store hessian as an array, or leave it out; add empty bands and compare; take all matrices from one set of eigenvectors."
@@ -122,29 +149,30 @@ function openFinding(
   };
 }
 
-/** Bands that close at the bottom, but not to the top: where sums over bands end to be trusted. */
-function partly(bands: readonly BandCompleteness[], trustedEv: number | null): HealthFinding[] {
+/** Bands that close at the bottom, but not to the top: where sums over bands end to be trusted. Serious where that is below the level. */
+function partly(bands: readonly BandCompleteness[], trustedEv: number | null, levelEv = -Infinity): HealthFinding[] {
   if (trustedEv === null || trustedEv === Infinity) return [];
+  const short = trustedEv < levelEv;
   return [
     {
-      id: "completeness-range",
-      severity: "note",
-      message: `sums over bands are good to 10% up to ${trustedEv.toFixed(2)} eV; above, bands are missing`,
-      evidence: `missing part by band: ${bands.map(({ band, missing }) => `${band}: ${shown(100 * missing, 2)}%`).join(", ")}`,
+      id: short ? "completeness" : "completeness-range",
+      severity: short ? "warn" : "note",
+      message: `sums over bands are good to 10% up to ${trustedEv.toFixed(2)} eV${short ? `, not up to the level at ${levelEv.toFixed(2)} eV: there are too few bands` : "; above, bands are missing"}`,
+      evidence: `missing part of the sum over bands, by band: ${byBand(bands)}`,
       measured,
-      cure: "",
+      cure: short ? "Add empty bands and compare." : "",
     },
   ];
 }
 
 function completeness(equations: readonly BendEquation[]): BandCompleteness[] {
-  const byBand = new Map<number, BendEquation[]>();
+  const grouped = new Map<number, BendEquation[]>();
   for (const equation of equations) {
     const band = equation.band as number;
-    byBand.set(band, [...(byBand.get(band) ?? []), equation]);
+    grouped.set(band, [...(grouped.get(band) ?? []), equation]);
   }
   const squares = (list: readonly number[]): number => list.reduce((sum, x) => sum + x * x, 0);
-  return [...byBand]
+  return [...grouped]
     .sort(([a], [b]) => a - b)
     .map(([band, list]) => {
       const size = Math.max(
@@ -156,7 +184,7 @@ function completeness(equations: readonly BendEquation[]): BandCompleteness[] {
         band,
         energyEv: list.reduce((sum, { energyEv }) => sum + energyEv, 0) / list.length,
         missing: Math.sqrt(squares(list.map((e) => e.change - e.pairs - secondOf(e, orders[0].places))) / size),
-        meshError: Math.sqrt(squares(list.map(({ error }) => error)) / size),
+        meshError: Math.sqrt(squares(list.map((e) => Math.max(e.error, coarseness(e)))) / size),
       };
     });
 }
@@ -168,5 +196,5 @@ function trustedUpTo(bands: readonly BandCompleteness[], bandCount: number): num
   if (bands.length < 2 || bandCount < 2) return null;
   const open = bands.findIndex(({ missing, meshError }) => missing > Math.max(closedPart, 4 * meshError));
   if (open < 0) return Infinity;
-  return open === 0 ? bands[0].energyEv - 1 : bands[open - 1].energyEv;
+  return open === 0 ? -Infinity : bands[open - 1].energyEv;
 }

@@ -40,9 +40,11 @@ export interface BendEquation extends Place {
   /** sum phi_n <n|d2H|n> of the pairs xx, yy, zz, yz, zx, xy. */
   readonly seconds: readonly number[];
   readonly pairs: number;
+  /** What is left of the equation when it is set up to fourth order instead of sixth; NaN on short lines. */
+  readonly coarse: number;
 }
 
-/** Change of Tr phi A phi A per step (A: a moment, or the velocity), against what the stored matrices say, and with A's partner transposed. */
+/** Change of Tr phi A phi A (less Tr phi^2 A^2 of a moment) per step, A a moment or the velocity, against what the stored matrices say, and with A's partner transposed. */
 export interface BondEquation {
   readonly array: string;
   readonly change: number;
@@ -154,17 +156,24 @@ function addBandEquations(
   out.slopes.push({ ...place, change: value, error, step: line.step, velocity });
   if (near[middle].second === undefined && facts.freeElectron === 0) return;
   const divided = near.map(({ point }) => dividedDifferences(window, point.energyEv));
-  const seconds = [0, 1, 2, 3, 4, 5].map((pair) =>
-    mean(near.map(({ point: { hessian } }, i) => secondTrace(weights[i], hessian?.[pair], pair, facts.freeElectron))),
+  const traces = near.map(({ point: { hessian } }, i) =>
+    [0, 1, 2, 3, 4, 5].map((pair) => secondTrace(weights[i], hessian?.[pair], pair, facts.freeElectron)),
   );
+  const seconds = [0, 1, 2, 3, 4, 5].map((pair) => mean(traces.map((trace) => trace[pair])));
   for (let axis = 0; axis < facts.periodic; axis++) {
     const bend = differenceOf(
       sums.map((s) => s[axis]),
       middle,
       reach,
     );
-    const pairs = mean(near.map(({ along, point }, i) => pairTrace(divided[i], along, point.velocity[axis])));
-    out.bends.push({ ...place, change: bend.value, error: bend.error, axis, step: line.step, seconds, pairs });
+    const parts = near.map(({ along, point }, i) => pairTrace(divided[i], along, point.velocity[axis]));
+    const whole = parts.map((pair, i) =>
+      line.step.reduce((sum, step, a) => sum + step * traces[i][pairIndex(a, axis)], pair),
+    );
+    const change = sums.map((s) => s[axis]);
+    const coarse = reach === 2 ? differenceOf(change, middle, 1).value - meanDerivative(whole, middle, 1) : Number.NaN;
+    const pairs = mean(parts);
+    out.bends.push({ ...place, change: bend.value, error: bend.error, axis, step: line.step, seconds, pairs, coarse });
   }
 }
 
@@ -219,25 +228,41 @@ function addBondEquations(near: readonly Prepared[], widthEv: number, out: Equat
   }
 }
 
-/** Tr phi A phi A summed over components, and its change per step; for the velocity A itself changes by d2H. */
+/**
+ * Tr phi A phi A - Tr phi^2 A^2 summed over components (what commutes with H gives nothing), and its change per step. Of the velocity, which itself
+ * changes by d2H, Tr phi A phi A alone.
+ */
 function bondReading({ point, along, second }: Prepared, name: string, weights: Float64Array, divided: Float64Array) {
   const parts = name === "velocity" ? point.velocity : (point.moments.get(name) as readonly Float64Array[]);
   const total = { value: 0, stored: 0, mirrored: 0 };
+  const products = pairwise(weights, (n, m) => weights[n] * weights[m]);
   for (const [axis, a] of parts.entries()) {
     const inner = sandwich(a, weights);
-    const ones = new Float64Array(divided.length);
-    for (let n = 0; n < weights.length; n++)
-      for (let m = 0; m < weights.length; m++) ones[n * weights.length + m] = weights[n] * weights[m];
-    total.value += pairTrace(ones, a, a);
-    const moved = 2 * pairTrace(divided, along, inner);
+    const twice = divided.map((f) => 2 * f);
     if (name === "velocity") {
+      const moved = pairTrace(twice, along, inner);
       const bent = (second as readonly Float64Array[])[axis];
-      total.stored += moved + 2 * pairTrace(ones, bent, a);
-      total.mirrored += moved + 2 * pairTrace(ones, bent, a, -1);
-    } else {
-      total.stored += moved;
-      total.mirrored += 2 * pairTrace(divided, along, inner, -1);
+      total.value += pairTrace(products, a, a);
+      total.stored += moved + 2 * pairTrace(products, bent, a);
+      total.mirrored += moved + 2 * pairTrace(products, bent, a, -1);
+      continue;
     }
+    const square = sandwich(a, new Float64Array(weights.length).fill(1));
+    const sums = pairwise(weights, (n, m) => divided[n * weights.length + m] * (weights[n] + weights[m]));
+    total.value -= pairTrace(
+      pairwise(weights, (n, m) => 0.5 * (weights[n] - weights[m]) ** 2),
+      a,
+      a,
+    );
+    for (const [key, sign] of [
+      ["stored", 1],
+      ["mirrored", -1],
+    ] as const)
+      total[key] += pairTrace(twice, along, inner, sign) - pairTrace(sums, along, square, sign);
   }
   return total;
+}
+
+function pairwise({ length }: Float64Array, of: (n: number, m: number) => number): Float64Array {
+  return Float64Array.from({ length: length * length }, (_, i) => of(Math.floor(i / length), i % length));
 }

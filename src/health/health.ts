@@ -118,7 +118,12 @@ function judgedHealth(
   level: readonly HealthFinding[],
 ): Health {
   const slopes = checkSlopes(equations, facts);
-  const bends = checkBends(equations, facts.bands, slopes.agree, facts.hessian === "free-electron");
+  const bends = checkBends(equations, {
+    bandCount: facts.bands,
+    agree: slopes.agree,
+    freeElectron: facts.hessian === "free-electron",
+    levelEv: facts.fermiEv,
+  });
   const spin = algebras.get("spin");
   const sizes = [...algebras].flatMap(([name, algebra]) =>
     name === "spin" ? checkSpinSize(algebra) : name === "orbital" ? checkOrbitalSize(name, algebra) : [],
