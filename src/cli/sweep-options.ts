@@ -77,7 +77,7 @@ export function addSweepOptions(command: Command, study: Partial<StudyWords> = {
       "--accuracy <SHARE>",
       `what refine aims at, in parts of each response's largest value (default ${words.accuracy})`,
     )
-    .option("--samples <N>", "about how many samples refine may spend (default 1,000,000 and 30 per stored point)")
+    .option("--samples <N>", "about how many samples refine may spend (default 200,000 and 100 per stored point)")
     .option("--degenerate <EV>", "pairs of bands closer than this are taken as degenerate (default 1e-5)")
     .option("--broaden <EV>", "eta in 1/((E_n - E_m)^2 + eta^2) (default 0)")
     .option(

@@ -63,6 +63,11 @@ function scatteringWords(result: AngleResult): string {
     (a, b) => (Math.abs(b.temperature_K - 300) < Math.abs(a.temperature_K - 300) ? b : a),
     first,
   );
+  if (!conducts(row) && row.drude > 0 && row.tau_fs < longestTauFs)
+    return (
+      `Caution: the Drude weight is not known well enough to tell a scattering time: ${withError(row.drude, row.drude_error)} ` +
+      `${result.resistivity_unit === "ohm m" ? "(S/m)/s" : "S/s"}. A denser mesh or a smaller --accuracy makes it surer.`
+    );
   if (!conducts(row))
     return (
       "Caution: the Drude weight is next to nothing: the level lies in a gap or at its edge, the resistivity says nothing of scattering in " +
