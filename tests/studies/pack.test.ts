@@ -37,7 +37,15 @@ const layout = (name: string): fc.Arbitrary<ArrayLayout> =>
 
 /** The curves of a grid, without its name and fingerprint. */
 async function curves(directory: string, method: "points" | "refine"): Promise<string> {
-  const options = { response: ["charge:xy", "spin:xy:z"], from: -1, to: 1, points: 5, temperature: [0, 300], method };
+  const options = {
+    response: ["charge:xy", "spin:xy:z"],
+    from: -1,
+    to: 1,
+    points: 5,
+    temperature: [0, 300],
+    method,
+    accuracy: 0.2,
+  };
   const { grid: _, ...rest } = await sweep(directory, sweepOptions.parse(options), { workers: 1 });
   return resultJson({ ...rest, job: {} });
 }
