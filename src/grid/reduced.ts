@@ -29,7 +29,7 @@ export function isReduced(manifest: Manifest, where: string): boolean {
   const missing = fields.filter(([, value]) => value === undefined).map(([name]) => name);
   if (missing.length > 0)
     throw dataFault(
-      `${where}: ${given.join(", ")} make it a symmetry-reduced grid, but ${missing.join(", ")} ${missing.length > 1 ? "are" : "is"} missing`,
+      `${where}: ${given.join(", ")} ${given.length > 1 ? "make" : "makes"} it a symmetry-reduced grid, but ${missing.join(", ")} ${missing.length > 1 ? "are" : "is"} missing`,
       "Give points, symmetry, arrays.point and arrays.weight; or none of them, and the full mesh.",
     );
   if (manifest.patch !== undefined)

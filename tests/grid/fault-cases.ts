@@ -225,7 +225,7 @@ export const faultCases: FaultCase[] = [
     /arrays\.energy\.sha256 is "abc": it must be 64 hexadecimal digits/,
   ],
   ["too few digests", field("arrays.energy.sha256", []), /sha256 holds 0 digests for 1 files/],
-  // not read yet
+  // patches, and parts of a symmetry-reduced grid
   [
     "a patch",
     field("patch", { divisions: [2, 2, 2], cells: "cells.i32" }),
@@ -233,12 +233,12 @@ export const faultCases: FaultCase[] = [
   ],
   ["patches", field("patches", ["patch-01"]), /patches: "patch-01" cannot be read/],
   [
-    "reduced points",
+    "points without a symmetry",
     field("points", 2),
-    /points belongs to a symmetry-reduced grid, which this version does not read yet/,
+    /points makes it a symmetry-reduced grid, but symmetry, arrays\.point, arrays\.weight are missing/,
   ],
   [
-    "a symmetry",
+    "a symmetry without points",
     field("symmetry", [
       {
         rotation: [
@@ -249,9 +249,13 @@ export const faultCases: FaultCase[] = [
         timeReversal: true,
       },
     ]),
-    /symmetry belongs/,
+    /symmetry makes it a symmetry-reduced grid, but points, arrays\.point, arrays\.weight are missing/,
   ],
-  ["weights", field("arrays.weight", { files: "w", type: "float64", axes: ["k"] }), /arrays\.weight belongs/],
+  [
+    "weights without points",
+    field("arrays.weight", { files: "w", type: "float64", axes: ["k"] }),
+    /arrays\.weight makes it a symmetry-reduced grid, but points, symmetry, arrays\.point are missing/,
+  ],
   // files
   [
     "a missing file",
