@@ -27,6 +27,8 @@ export type { DopeResult } from "./studies/dope-result.js";
 export { inspect, inspectOptions } from "./studies/inspect.js";
 export { type LocateOptions, locate, locateOptions } from "./studies/locate.js";
 export type { LocateResult } from "./studies/locate-result.js";
+export { type PackOptions, type PackSource, pack, packOptions } from "./studies/pack.js";
+export type { PackResult } from "./studies/pack-result.js";
 export { type SeriesOptions, series, seriesOptions } from "./studies/series.js";
 export type { SeriesResult } from "./studies/series-result.js";
 export { type SweepOptions, sweep, sweepOptions } from "./studies/sweep.js";

@@ -46,8 +46,7 @@ export function completeFacts(path: string): CompletedFacts {
   if (isFields(arrays.moments))
     completed.moments = Object.fromEntries(
       Object.entries(moments).map(([name, entry]) => {
-        const scalar = isFields(entry) && entry.kind === "scalar";
-        return [name, complete(`moments.${name}`, entry, scalar ? undefined : "direction")];
+        return [name, complete(`moments.${name}`, entry, "direction")];
       }),
     );
   if (arrays.hessian !== undefined) completed.hessian = complete("hessian", arrays.hessian, "pair");
@@ -111,7 +110,9 @@ function examine(directory: string, name: string, entry: Fields, component: Axis
   const header = files.length === 0 ? undefined : headerOf(name, files[0]);
   if (header === undefined) return undefined;
   const file = basename(files[0].name);
-  const whole = isFields(entry.files) || component === undefined ? [] : [component];
+  // A scalar has one direction, which may be an index of size 1 or no index at all.
+  const single = entry.kind === "scalar" && !(header.shape.length > 3 && header.shape.at(-3) === 1);
+  const whole = isFields(entry.files) || component === undefined || single ? [] : [component];
   const full: Axis[] = name === "energy" ? ["k", "band"] : ["k", ...whole, "bra", "ket"];
   const axes = Array.isArray(entry.axes) ? (entry.axes as Axis[]) : axesOf(name, file, header, full);
   const [, order, code] = /^([<>=|]?)(\w+)$/.exec(header.descr) ?? [];

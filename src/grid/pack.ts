@@ -1,7 +1,7 @@
 // pack.ts: how is an open band grid written again, in canonical form and in another precision or order where asked?
 import { rmSync } from "node:fs";
 import { join } from "node:path";
-import { Fault } from "../base/errors.js";
+import { dataFault, Fault, isFault } from "../base/errors.js";
 import type { ArrayPlan } from "./arrays.js";
 import type { Block, GridFacts, MatrixBlock, Triple } from "./grid.js";
 import type { ArrayLayout, GridDescription, GridLayout, ReducedPoints } from "./layout.js";
@@ -102,7 +102,7 @@ async function copyGrid(
   grid: Grid,
   directory: string,
   description: GridDescription,
-  layout: GridLayout,
+  layout: GridLayout & { readonly widens: boolean },
   { onProgress, signal }: { readonly onProgress: (done: number) => void; readonly signal?: AbortSignal },
 ): Promise<void> {
   const want = wantAll(grid);
@@ -121,6 +121,10 @@ async function copyGrid(
       await new Promise(setImmediate);
     }
     writer.finish();
+  } catch (error) {
+    throw layout.widens && isFault(error) && error.message.includes("not Hermitian")
+      ? dataFault(error.message, "These are Hermitian to single precision only: leave the precision as it is.", error)
+      : error;
   } finally {
     reader.close();
     writer.discard();
@@ -165,9 +169,10 @@ function provenanceOf(provenance: unknown, sha256: string): Record<string, unkno
   return { ...rest, ...loose, packed: { from: sha256, ...(writer === undefined ? {} : { writer }) } };
 }
 
-function layoutOf(grid: Grid, changes: PackChanges): GridLayout {
+function layoutOf(grid: Grid, changes: PackChanges): GridLayout & { readonly widens: boolean } {
   const arrays = grid.arrays.map((plan): [string, ArrayLayout] => [plan.name, arrayLayout(plan, changes)]);
-  return { arrays: Object.fromEntries(arrays), sha256: changes.digests === true };
+  const widens = changes.precision === "double";
+  return { arrays: Object.fromEntries(arrays), sha256: changes.digests === true, widens };
 }
 
 const narrowed: Record<NumberType, NumberType> = {

@@ -103,6 +103,26 @@ describe("a description", () => {
     expect(opened(draft).grid.facts).toMatchObject({ divisions: [2, 2, 1], bands: 2, periodic: 2 });
   });
 
+  it("of a scalar moment may have an index of size 1 for its direction, or none", () => {
+    for (const shape of [
+      [4, 2, 2],
+      [4, 1, 2, 2],
+      [2, 2, 1, 1, 2, 2],
+    ]) {
+      const draft = shortest();
+      const numbers = contents()
+        ["spin.c128"].subarray(0, 32)
+        .map((x, i) => (i % 2 === 0 && ((i >> 1) % 4) % 3 === 0 ? x : 0));
+      writeFileSync(join(draft.directory, "layer.npy"), Buffer.concat([npyHeader("<c16", shape), bytesOf(numbers)]));
+      draft.facts.arrays.moments.layer = { files: "layer.npy", unit: "1", kind: "scalar" };
+      const { grid } = opened(draft);
+      const want = { velocity: [], moments: [{ name: "layer", direction: 0 }], hessian: false };
+      const layer = openReader(grid, want).read(0, 4).moments.get("layer")?.[0];
+      if (layer === undefined) throw new Error("not read");
+      expect(viewOf(layer, 4, 2).get(3, 1, 1, 0)).toBe(numbers[30]);
+    }
+  });
+
   it("may give the files of every component, with k first as ever", () => {
     const draft = shortest();
     const whole = contents()["velocity.c128"];

@@ -294,6 +294,21 @@ describe("a packing that does not come to its end", () => {
     expect(readdirSync(dirname(directory))).toEqual(["grid"]);
   });
 
+  it("says what to do where matrices are Hermitian to single precision only", async () => {
+    const { directory } = writeRandom({ arrays: { velocity: { type: "complex64" } } });
+    const file = join(directory, "velocity.c64");
+    const bytes = readFileSync(file);
+    // Real part of [0, 1] at the first point: off by 1e-5 of elements of order 1, legal for 32-bit numbers and not for 64-bit ones.
+    bytes.writeFloatLE(bytes.readFloatLE(8) + 3e-5, 8);
+    writeFileSync(file, bytes);
+    const grid = openGrid(directory);
+    const packed = await packGrid(grid, fresh(), {});
+    expect(bits(packed)).toBe(bits(grid));
+    const error = await rejected(packGrid(grid, fresh(), { precision: "double" }));
+    expect(error.message).toMatch(/velocity x is not Hermitian at k point 0/);
+    expect(isFault(error) && error.cure).toMatch(/leave the precision as it is/);
+  });
+
   it("real symmetric matrices stay real numbers on disk", async () => {
     const arrays = {
       velocity: { type: "float64" },
