@@ -88,7 +88,7 @@ const isFullMesh = ({ facts }: Grid): boolean =>
  */
 export function checkHealth(grid: Grid, effort: HealthEffort, count?: Count): Health {
   const level = count === undefined ? [] : checkLevel(grid.facts, count);
-  if (!isFullMesh(grid)) return { ...nothing, findings: level };
+  if (!isFullMesh(grid)) return { ...unknownHealth, findings: level };
   const source = openPoints(grid);
   try {
     const sized = scaledTo(grid.facts.bands, effort);
@@ -98,7 +98,8 @@ export function checkHealth(grid: Grid, effort: HealthEffort, count?: Count): He
   }
 }
 
-const nothing: Health = {
+/** Of data that could not be looked at. */
+export const unknownHealth: Health = {
   findings: [],
   points: 0,
   equations: 0,

@@ -1,6 +1,7 @@
 // inspect-text.ts: what does an inspection say in words and tables, one grid after another?
 import type { GridContents, InspectedGrid, InspectedLevel, InspectResult } from "../studies/inspect-result.js";
 import { cleanLine } from "./clean.js";
+import { healthLines } from "./health-text.js";
 import { grouped, plain } from "./numbers.js";
 import { type Column, table, wrapped } from "./table.js";
 
@@ -18,11 +19,15 @@ function gridText(grid: InspectedGrid, width: number): string {
   const faults = grid.faults.map(({ message, cure }) => sentence("fault", `${message}. ${cure}`, width));
   const more = grid.faults_total - grid.faults.length;
   if (more > 0) faults.push(`  and ${grouped(more)} more faults`);
+  const health = grid.health === null ? [] : healthLines(grid.health, width);
   const warnings = grid.warnings.map((warning) => sentence("note", warning, width));
-  return [...parts, ...faults, ...warnings].join("\n").trimEnd();
+  return [...parts, ...faults, ...health, ...warnings].join("\n").trimEnd();
 }
 
-function verdict({ sound, faults_total: total, contents }: InspectedGrid): string {
+function verdict({ sound, faults_total: total, contents, health }: InspectedGrid): string {
+  const wrong = health?.findings.filter(({ severity }) => severity !== "note").length ?? 0;
+  if (sound && wrong > 0)
+    return `sound in form, but ${wrong === 1 ? "one thing is" : `${wrong} things are`} wrong with the data (health, below)`;
   if (sound) return "sound; every number was read";
   if (contents === null) return "cannot be used";
   return `${grouped(total)} ${total === 1 ? "fault" : "faults"}`;

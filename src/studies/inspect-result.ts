@@ -1,5 +1,6 @@
 // inspect-result.ts: the result of an inspection, as --json prints it and the text report reads it.
 import type { HessianKind, MomentFacts } from "../grid/grid.js";
+import type { HealthFinding } from "../health/finding.js";
 
 /** Something that makes the grid unusable, and what to do. */
 export interface InspectFault {
@@ -64,6 +65,31 @@ export interface GridContents {
   patches: { name: string; cells: number; divisions: number[]; points: number; bytes: number }[];
 }
 
+/** What the health checks found: is what is stored consistent with itself from point to point? */
+export interface InspectedHealth {
+  findings: HealthFinding[];
+  /** Points whose matrices were looked at, and equations between neighbours that the mesh resolves. */
+  points: number;
+  equations: number;
+  /** Part of the squared changes of the energies that the velocities leave unexplained; null: the mesh is too coarse to tell. */
+  slopes_left: number | null;
+  /** Root mean square change of the energies from a point to the next. */
+  step_eV: number;
+  /** Whether sums over bands close at all bands; null: cannot be told. If not, the energy (absolute) up to which they are good to 10%. */
+  sums_closed: boolean | null;
+  sums_trusted_up_to_eV: number | null;
+  /** The effective-mass sum rule by band: part of the sum over bands that is missing, and what the mesh leaves open of it. */
+  completeness: { band: number; energy_eV: number; missing: number; mesh_error: number }[];
+  /** Which of time reversal and inversion the crystal keeps. */
+  symmetry: "both" | "time reversal" | "inversion" | "one of both" | "neither" | "unknown";
+  /** Largest |E(k) - E(-k)|; null where no opposite is stored. */
+  uneven_eV: number | null;
+  /** Largest splitting within pairs that are twofold everywhere; null where there are none. */
+  pair_splitting_eV: number | null;
+  /** Default of --degenerate on this grid. */
+  degenerate_eV: number;
+}
+
 export interface InspectedGrid {
   /** As it was named. */
   directory: string;
@@ -74,6 +100,8 @@ export interface InspectedGrid {
   /** The first hard faults, at most 20, and the count of all. */
   faults: InspectFault[];
   faults_total: number;
+  /** Null where the form has faults: they come first. */
+  health: InspectedHealth | null;
   /** What is legal but worth knowing. */
   warnings: string[];
 }

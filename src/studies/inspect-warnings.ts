@@ -17,11 +17,7 @@ export function warningsOf(contents: GridContents, { facts, slowArrays }: Grid):
   ];
 }
 
-/**
- * The stated electrons against those counted below the stated level. A mesh sum of a sharp step is uncertain by about the
- * states that one mesh point holds times the square root of the points near the level; 2% of a cell's electrons, at least
- * 0.1, is far outside it for the usual meshes and below any slip in counting.
- */
+/** Whether the level lies in the bands at all; whether it holds the stated electrons is a matter of health. */
 function levelWarnings({ level, band_range_eV }: GridContents): string[] {
   if (level === null) return [];
   const warnings: string[] = [];
@@ -30,13 +26,6 @@ function levelWarnings({ level, band_range_eV }: GridContents): string[] {
     warnings.push(
       `the reference level ${level.reference_eV.toFixed(3)} eV lies outside all bands (${lowest.toFixed(3)} to ${highest.toFixed(3)} eV): check level.fermi and its unit`,
     );
-  } else if (level.fermi_eV !== null && level.electrons !== null) {
-    const difference = level.electrons_counted - level.electrons;
-    if (Math.abs(difference) > Math.max(0.1, 0.02 * level.electrons)) {
-      warnings.push(
-        `level.fermi and level.electrons disagree: up to ${level.fermi_eV.toFixed(3)} eV the mesh holds ${level.electrons_counted.toFixed(3)} electrons per cell, stated are ${level.electrons}`,
-      );
-    }
   }
   return warnings;
 }

@@ -9,6 +9,7 @@ import { type Grid, openGrid } from "../grid/open.js";
 import { type ArraySurvey, type Survey, surveyGrid } from "../grid/survey.js";
 import { energyUnits, hessianUnits, momentUnits, velocityUnits } from "../grid/units.js";
 import { cellArea, cellVolume } from "../zone/lattice.js";
+import { inspectHealth } from "./inspect-health.js";
 import type {
   GridContents,
   InspectedArray,
@@ -58,11 +59,20 @@ function inspectGrid(directory: string, options: InspectOptions, onProgress?: On
     const sound = faults.length === 0;
     const contents = contentsOf(grid, survey, sound ? levelOf(grid.facts, survey) : null, checked);
     const total = surveys.reduce((sum, each) => sum + each.survey.findingsTotal + (each.survey.stopped ? 1 : 0), 0);
-    return { directory, sound, contents, faults, faults_total: total, warnings: warningsOf(contents, grid) };
+    const health = sound ? inspectHealth(grid) : null;
+    return { directory, sound, contents, faults, faults_total: total, health, warnings: warningsOf(contents, grid) };
   } catch (error) {
     if (!isFault(error)) throw error;
     const { message, cure } = error;
-    return { directory, sound: false, contents: null, faults: [{ message, cure }], faults_total: 1, warnings: [] };
+    return {
+      directory,
+      sound: false,
+      contents: null,
+      faults: [{ message, cure }],
+      faults_total: 1,
+      health: null,
+      warnings: [],
+    };
   }
 }
 

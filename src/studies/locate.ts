@@ -132,7 +132,7 @@ export async function locate(directory: string, options: LocateOptions, run: Run
       ? {}
       : { path: { ...path, energies_eV: energiesOf(visited, mapPoints ** 2, facts.bands, curves) } }),
     sampling: samplingOf(curves, grid),
-    notes: [...curves.notes, ...notesOf(grid, options)],
+    notes: [...curves.notes, ...notesOf(grid, planned.options)],
   };
 }
 
@@ -183,7 +183,7 @@ function energiesOf({ energies }: Visited, first: number, bands: number, { refer
   );
 }
 
-function notesOf({ facts }: Grid, { method: how, degenerate: closeness }: LocateOptions): string[] {
+function notesOf({ facts }: Grid, { method: how, degenerate: closeness }: SweepPlan["options"]): string[] {
   return [
     "a cell's contribution is that of all its bands together; images of a place under the crystal's symmetry are listed one by one",
     `bands are counted from 0 in the order of their energies; those never seen more than ${closeness} eV apart are one set, and within a set no band is told from another`,

@@ -11,6 +11,7 @@ import { openGrid } from "../grid/open.js";
 import { storedFacts } from "../grid/view.js";
 import { planAxis } from "../spectrum/axis.js";
 import type { Sections } from "../spectrum/sections.js";
+import { quickHealth } from "./quick-health.js";
 import { type ReferenceLevel, referenceLevel } from "./reference.js";
 
 /** Options of a sweep; the same object is what a job file holds and what every result embeds. */
@@ -23,7 +24,8 @@ export const sweepOptions = z.strictObject({
   method: z.enum(["refine", "cells", "points"]).default("refine"),
   accuracy: z.number().min(1e-6).max(1).default(0.01),
   samples: z.int().min(1000).max(1e10).optional(),
-  degenerate: z.number().min(0).max(10).default(1e-5),
+  /** Left out: 1e-5, or ten times what Kramers pairs are split by on disk. */
+  degenerate: z.number().min(0).max(10).optional(),
   broaden: z.number().min(0).max(100).default(0),
   unit: z.string().max(40).optional(),
   thermal: z.boolean().optional(),
@@ -41,7 +43,7 @@ export interface SweepPlan {
   readonly job: SweepJob;
   readonly facts: GridFacts;
   readonly reference: ReferenceLevel;
-  readonly options: SweepOptions;
+  readonly options: SweepOptions & { readonly degenerate: number };
 }
 
 /** A part of a grid to sweep over, by a level found elsewhere. */
@@ -64,6 +66,7 @@ export function planSweep(directory: string, options: SweepOptions, part: SweptP
   const plan = planResponses(options.response ?? defaultResponses(facts), facts);
   const reference = part.reference ?? referenceLevel(storedFacts(facts));
   const temperatures = [...new Set(options.temperature)].sort((a, b) => a - b);
+  const degenerate = options.degenerate ?? quickHealth(directory, facts).degenerateEv;
   const window = {
     fromEv: reference.levelEv + options.from,
     toEv: reference.levelEv + options.to,
@@ -75,11 +78,11 @@ export function planSweep(directory: string, options: SweepOptions, part: SweptP
     view,
     method: options.method,
     plan,
-    denominator: { degenerateEv: options.degenerate, broadenEv: options.broaden },
+    denominator: { degenerateEv: degenerate, broadenEv: options.broaden },
     axis: planAxis(window, temperatures, marginForDefect * regularEv),
   };
   for (const column of plan.columns) unitOf(column.carrier, facts, options);
-  return { job, facts, reference, options, regularEv };
+  return { job, facts, reference, options: { ...options, degenerate }, regularEv };
 }
 
 /** Unit and prefactor of a carrier's responses, as the options want them. */

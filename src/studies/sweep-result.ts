@@ -9,6 +9,7 @@ import { counters } from "../engine/refiner.js";
 import type { GridFacts } from "../grid/grid.js";
 import { cellArea, cellVolume } from "../zone/lattice.js";
 import { smallestSubMeshes, spreadSubMeshes } from "../zone/mesh.js";
+import { healthNotes, quickHealth } from "./quick-health.js";
 import { countBelow } from "./reference.js";
 import { curvesOf, type ReadCurves, spectraFacts } from "./sweep-curves.js";
 import { type Computed, type SweepPlan, unitOf } from "./sweep-plan.js";
@@ -104,6 +105,7 @@ function notesOf({ job, facts, reference, options }: SweepPlan): string[] {
     `levels are relative to ${reference.levelEv.toFixed(6)} eV, ${reference.origin}`,
     `pairs of bands closer than ${options.degenerate} eV are taken as degenerate`,
   ];
+  notes.push(...healthNotes(quickHealth(job.directory, facts), reference.levelEv + options.to, options.degenerate));
   if (options.broaden > 0) notes.push(`denominators are broadened by ${options.broaden} eV`);
   if (job.method === "cells")
     notes.push(`energy resolution at 0 K: ${(job.axis.nodes.stepEv * 1000).toPrecision(3)} meV`);

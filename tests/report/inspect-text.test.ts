@@ -56,7 +56,7 @@ const result = (more: Partial<InspectResult["grids"][number]> = {}): InspectResu
   format: "tidegauge.inspect/1",
   version: "0",
   job: {},
-  grids: [{ directory: "a", sound: true, contents, faults: [], faults_total: 0, warnings: [], ...more }],
+  grids: [{ directory: "a", sound: true, contents, faults: [], faults_total: 0, health: null, warnings: [], ...more }],
 });
 
 describe("the text of an inspection", () => {

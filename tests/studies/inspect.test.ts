@@ -123,7 +123,13 @@ describe("a broken grid", () => {
     const path = join(directory, "bandgrid.json");
     const manifest = JSON.parse(readFileSync(path, "utf8"));
     writeFileSync(path, JSON.stringify({ ...manifest, level: { unit: "eV", fermi: 0, electrons: 1.5 } }));
-    expect(only(directory).warnings.join("\n")).toMatch(/disagree.*holds 1\.000 electrons per cell, stated are 1\.5/);
+    expect(only(directory).health?.findings).toMatchObject([
+      {
+        id: "level",
+        message: expect.stringMatching(/disagree/),
+        evidence: expect.stringMatching(/holds 1 electrons per cell.*stated are 1\.5/),
+      },
+    ]);
     writeFileSync(path, JSON.stringify({ ...manifest, level: { unit: "hartree", fermi: 5 } }));
     expect(only(directory).warnings.join("\n")).toMatch(/outside all bands/);
   });

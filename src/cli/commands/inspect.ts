@@ -21,7 +21,8 @@ Examples:
       the same as JSON
 
 Exit status 3, and no file in --out, when a grid has a hard fault: a file or field that does not fit, a number that is not finite,
-energies that do not ascend, a matrix that is not Hermitian. Notes are no faults.`;
+energies that do not ascend, a matrix that is not Hermitian; or when its health shows a certain mistake (a wrong unit, sign or axis, bra and
+ket exchanged, a factor 2 of the spin). Warnings and notes are no faults.`;
 
 /** Adds the command to the program. */
 export function register(program: Command, context: Context): void {
@@ -51,10 +52,20 @@ export function register(program: Command, context: Context): void {
 
 /** Throws the first fault as a data Fault; the result, which has been printed, holds all of them. */
 function refuseUnsound({ grids }: InspectResult): void {
+  refuseUnhealthy(grids);
   const unsound = grids.filter((grid) => !grid.sound);
   const [first] = unsound;
   if (first === undefined) return;
   const others = unsound.reduce((sum, grid) => sum + grid.faults_total, -1);
   const more = others === 0 ? "" : ` (and ${others} more, see the result)`;
   throw dataFault(`${cleanLine(first.directory)}: ${first.faults[0].message}${more}`, first.faults[0].cure);
+}
+
+/** Throws the first certain mistake in the data of a grid that is sound in form; forms come first. */
+function refuseUnhealthy(grids: InspectResult["grids"]): void {
+  if (grids.some((grid) => !grid.sound)) return;
+  for (const { directory, health } of grids) {
+    const certain = health?.findings.find(({ severity }) => severity === "fault");
+    if (certain !== undefined) throw dataFault(`${cleanLine(directory)}: ${certain.message}`, certain.cure);
+  }
 }
