@@ -45,11 +45,13 @@ function taken(path: string, why: string): Fault {
 function ownFiles(target: string, names: readonly string[], shown: string): void {
   if (!names.includes(manifestName)) throw taken(shown, "exists, is not empty, and is not a band grid");
   let allowed: Set<string>;
+  let patches: string[];
   try {
     const { provenance } = parseManifest(readManifestBytes(join(target, manifestName)));
     const writer = typeof provenance === "object" && provenance !== null && "writer" in provenance && provenance.writer;
     if (writer !== writerName) throw taken(shown, "is a band grid that this program did not write");
     const grid = openGrid(target);
+    patches = grid.patches.map(({ facts }) => (facts.patch?.name ?? "").split(/[\\/]/)[0]);
     allowed = new Set(grid.arrays.flatMap((array) => array.files.map((file) => file.name)));
     if (grid.unfolding !== undefined) for (const name of Object.values(reducedFiles)) allowed.add(name);
   } catch (error) {
@@ -57,6 +59,8 @@ function ownFiles(target: string, names: readonly string[], shown: string): void
     throw taken(shown, "exists and holds a band grid that cannot be read");
   }
   const foreign = names.find((name) => name !== manifestName && !allowed.has(name));
+  if (foreign !== undefined && patches.includes(foreign))
+    throw taken(shown, `has the patch ${quoted(foreign)}, and a grid with patches is never replaced`);
   if (foreign !== undefined) throw taken(shown, `holds ${quoted(foreign)}, which is no part of its band grid`);
 }
 

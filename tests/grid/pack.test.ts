@@ -223,6 +223,7 @@ describe("what a grid has beside its arrays", () => {
     expect(is.arrays[1].files).toHaveLength(3);
     expect(bits(is)).toBe(bits(was));
     expect(bits({ ...packed, patches: [] })).toBe(bits({ ...grid, patches: [] }));
+    await expect(packGrid(grid, packed.facts.directory, {})).rejects.toThrow(/has the patch "patch-01"/);
   });
 
   it("a symmetry-reduced grid stays so, or becomes the full mesh that its reader gives", async () => {

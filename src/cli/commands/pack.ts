@@ -35,7 +35,7 @@ Examples:
       any order of axes, byte order and number of files becomes one little-endian file for each array, k slowest; every number
       reads back bit by bit, and patches come along
 
-An existing --out is replaced only where it is a band grid that this program wrote, and only when the new one is complete.
+An existing --out is replaced only where it is a band grid that this program wrote, without patches, and when the new one is complete.
 Exit status 3 when the data have a hard fault: the grid is then not written, or, with --check, written and named unsound.`;
 
 /** Adds the command to the program. */
