@@ -3,8 +3,10 @@ import { availableParallelism } from "node:os";
 import type { Command } from "commander";
 import { z } from "zod";
 import type { RunOptions } from "../engine/run.js";
+import { mistakesOf } from "../studies/quick-health.js";
 import { type SweepOptions, sweepOptions } from "../studies/sweep.js";
 import type { Context } from "./context.js";
+import { namedGrids } from "./grids.js";
 import { readJob } from "./jobfile.js";
 import { typedNumber, typedShare, typedWhole, validated } from "./validated.js";
 
@@ -78,7 +80,10 @@ export function addSweepOptions(command: Command, study: Partial<StudyWords> = {
       `what refine aims at, in parts of each response's largest value (default ${words.accuracy})`,
     )
     .option("--samples <N>", "about how many samples refine may spend (default 200,000 and 100 per stored point)")
-    .option("--degenerate <EV>", "pairs of bands closer than this are taken as degenerate (default 1e-5)")
+    .option(
+      "--degenerate <EV>",
+      "pairs of bands closer than this are taken as degenerate (default 1e-5, or ten times what Kramers pairs are split by on disk)",
+    )
     .option("--broaden <EV>", "eta in 1/((E_n - E_m)^2 + eta^2) (default 0)")
     .option(
       "--unit <UNIT>",
@@ -127,6 +132,7 @@ export async function withRun<T>(
   compute: (run: RunOptions) => Promise<T>,
 ): Promise<T> {
   const { workers } = validated(typedRunOptions, command.opts(), command.name());
+  warnOfHealth(namedGrids(command.args), context);
   const progress = context.progress(label);
   try {
     return await compute({
@@ -137,4 +143,10 @@ export async function withRun<T>(
   } finally {
     progress.end();
   }
+}
+
+/** Tells on stderr of every mistake that the quick health checks see, before anything is computed. */
+function warnOfHealth(directories: readonly string[], { terminal }: Context): void {
+  for (const directory of directories)
+    for (const mistake of mistakesOf(directory)) terminal.warn(`${directory}: ${mistake}`);
 }

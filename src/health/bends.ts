@@ -196,5 +196,6 @@ function trustedUpTo(bands: readonly BandCompleteness[], bandCount: number): num
   if (bands.length < 2 || bandCount < 2) return null;
   const open = bands.findIndex(({ missing, meshError }) => missing > Math.max(closedPart, 4 * meshError));
   if (open < 0) return Infinity;
-  return open === 0 ? -Infinity : bands[open - 1].energyEv;
+  const good = bands.slice(0, open).findLast(({ missing }) => missing <= closedPart);
+  return good === undefined ? -Infinity : good.energyEv;
 }

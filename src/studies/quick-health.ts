@@ -2,6 +2,7 @@
 import { isFault } from "../base/errors.js";
 import type { GridFacts } from "../grid/grid.js";
 import { openGrid } from "../grid/open.js";
+import type { HealthFinding } from "../health/finding.js";
 import { checkHealth, type Health, quickEffort, unknownHealth } from "../health/health.js";
 
 const remembered = new Map<string, Health>();
@@ -28,15 +29,28 @@ function checked(directory: string): Health {
   }
 }
 
+const sentences = (findings: readonly HealthFinding[]): string[] =>
+  findings
+    .filter(({ severity }) => severity !== "note")
+    .map(({ message, cure }) => `the data look wrong: ${message}. ${cure} (inspect shows the evidence)`);
+
+/** What the quick checks find wrong with a grid, one sentence each; nothing for one that cannot be opened: whoever opens it next says why. */
+export function mistakesOf(directory: string): string[] {
+  try {
+    return sentences(quickHealth(directory, openGrid(directory).facts).findings);
+  } catch (error) {
+    if (!isFault(error)) throw error;
+    return [];
+  }
+}
+
 /** One sentence for each mistake found, and one where levels lie above what sums over bands can be trusted to; empty for a clean grid. */
 export function healthNotes(
   { findings, trustedEv, degenerateEv }: Health,
   upToEv: number,
   degenerate: number,
 ): string[] {
-  const notes = findings
-    .filter(({ severity }) => severity !== "note")
-    .map(({ message, cure }) => `the data look wrong: ${message}. ${cure} (inspect shows the evidence)`);
+  const notes = sentences(findings);
   const trusted = findings.some(({ id }) => id === "completeness") ? null : trustedEv;
   if (trusted !== null && Number.isFinite(trusted) && trusted < upToEv)
     notes.push(
