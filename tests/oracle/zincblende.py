@@ -2,7 +2,7 @@
 """
 zincblende.py --level EV... --temperature K... [--material GaAs] [--bands 30] [--angles 24] [--radii 48] [--mesh 24]
 
-Written apart from src/samples: form factors of M. L. Cohen and T. K. Bergstresser, Phys. Rev. 141, 789 (1966) (from memory),
+Needs SciPy beside NumPy. Written apart from src/samples: form factors of M. L. Cohen and T. K. Bergstresser, Phys. Rev. 141, 789 (1966) (from memory),
 spin-orbit coupling of Gaussian wells at both atoms, scaled to the splitting of the valence top; sums over the lowest bands.
 
 A mesh sees the near-degenerate spin-split holes point by point and does not converge (scatter of tens of (hbar/e) S/cm at 10^5

@@ -16,6 +16,7 @@ const contents: GridContents = {
   divisions: [4, 6, 8],
   offset: [0.5, 0, 0],
   points: 192,
+  reduced: null,
   bytes: 1_536_000,
   bands: 2,
   electrons_per_band: 2,
@@ -50,6 +51,7 @@ const contents: GridContents = {
   },
   digests_checked: 0,
   patches: [],
+  reduced: null,
 };
 
 const result = (more: Partial<InspectResult["grids"][number]> = {}): InspectResult => ({
@@ -60,6 +62,13 @@ const result = (more: Partial<InspectResult["grids"][number]> = {}): InspectResu
 });
 
 describe("the text of an inspection", () => {
+  it("says how many points of a symmetry-reduced grid are stored", () => {
+    const reduced = { ...contents, reduced: { stored: 30, operations: 16 } };
+    expect(inspectText(result({ contents: reduced }), 200)).toMatch(
+      /4 x 6 x 8, offset 0\.5 0 0: 192 k points, 30 of them stored with a group of 16 operations, 1\.54 MB/,
+    );
+  });
+
   it("is this page for a small sound grid", () => {
     expect(inspectText(result(), 80)).toMatchInlineSnapshot(`
       "a: sound; every number was read
