@@ -73,14 +73,18 @@ function cellWords({ lattice_A: rows, periodic, cell_size: size }: GridContents)
   return `${periodic === 3 ? "crystal" : "layer"}, ${plain(size, 5)} A^${periodic}; a1 a2 a3 in A: ${vectors}`;
 }
 
-function meshWords({ divisions, offset, periodic, points, bytes }: GridContents): string {
+function meshWords({ divisions, offset, periodic, points, reduced, bytes }: GridContents): string {
   const start = offset.some((x) => x !== 0)
     ? `, offset ${offset
         .slice(0, periodic)
         .map((x) => plain(x, 4))
         .join(" ")}`
     : "";
-  return `${divisions.slice(0, periodic).join(" x ")}${start}: ${grouped(points)} k points, ${byteWords(bytes)}`;
+  const stored =
+    reduced === null
+      ? ""
+      : `, ${grouped(reduced.stored)} of them stored with a group of ${reduced.operations} operations`;
+  return `${divisions.slice(0, periodic).join(" x ")}${start}: ${grouped(points)} k points${stored}, ${byteWords(bytes)}`;
 }
 
 const patchLines = ({ patches }: GridContents): [string, string][] =>

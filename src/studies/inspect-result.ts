@@ -49,6 +49,8 @@ export interface GridContents {
   divisions: number[];
   offset: number[];
   points: number;
+  /** Of a symmetry-reduced grid: the points that are stored, and the order of the group that makes the others; null of a full one. */
+  reduced: { stored: number; operations: number } | null;
   bytes: number;
   bands: number;
   electrons_per_band: 1 | 2;

@@ -98,6 +98,7 @@ function contentsOf(grid: Grid, survey: Survey, level: InspectedLevel | null, di
     divisions: [...facts.divisions],
     offset: [...facts.offset],
     points: facts.points,
+    reduced: grid.unfolding ? { stored: grid.unfolding.stored, operations: grid.unfolding.operations.length } : null,
     bytes: facts.bytes,
     bands: facts.bands,
     electrons_per_band: facts.electronsPerBand,

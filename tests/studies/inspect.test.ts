@@ -4,6 +4,7 @@ import { tmpdir } from "node:os";
 import { join } from "node:path";
 import { afterAll, describe, expect, it } from "vitest";
 import { buildSample } from "../../src/samples/catalogue.js";
+import { reducedPoints } from "../../src/samples/symmetry.js";
 import { writeSample } from "../../src/samples/write.js";
 import { inspect, inspectOptions } from "../../src/studies/inspect.js";
 
@@ -108,6 +109,22 @@ describe("a broken grid", () => {
     });
     expect(only(changed).sound).toBe(true);
     expect(only(changed, { digests: true }).faults[0]?.message).toMatch(/energy.*SHA-256/);
+  });
+
+  it("of a symmetry-reduced grid: what is stored, counted as the whole mesh, and healthy", () => {
+    const model = buildSample("haldane", { M: "0.1" });
+    const directory = join(root, "reduced");
+    const divisions = [12, 12, 1] as const;
+    const reduced = reducedPoints(model, { ...model, divisions, offset: [0, 0, 0] });
+    writeSample(model, { directory, divisions, reduced });
+    const [a, b] = [only(directory), only(haldane)];
+    expect(a.contents).toMatchObject({ points: 144, reduced: { stored: reduced.points.length, operations: 12 } });
+    expect(b.contents?.reduced).toBeNull();
+    expect(a.contents?.level?.electrons_counted).toBeCloseTo(b.contents?.level?.electrons_counted ?? 0, 12);
+    expect(a.contents?.band_range_eV.flat()).toEqual(
+      b.contents?.band_range_eV.flat().map((energy) => expect.closeTo(energy, 12)),
+    );
+    expect(a.health?.findings).toEqual(b.health?.findings);
   });
 
   it("that cannot be opened does not hide the next grid", () => {
