@@ -51,7 +51,6 @@ const contents: GridContents = {
   },
   digests_checked: 0,
   patches: [],
-  reduced: null,
 };
 
 const result = (more: Partial<InspectResult["grids"][number]> = {}): InspectResult => ({
