@@ -51,13 +51,18 @@ export function fileDigest(array: string, file: Pick<FilePlan, "path" | "name">)
   return hash.digest("hex");
 }
 
+interface Digested {
+  readonly arrays: readonly ArrayPlan[];
+  readonly pointArrays?: readonly ArrayPlan[] | undefined;
+}
+
 /**
  * Reads every file that has a digest in the manifest and compares; returns how many were checked.
  * Throws a data Fault that names the first file that differs.
  */
-export function verifyDigests(grid: { readonly arrays: readonly ArrayPlan[] }): number {
+export function verifyDigests({ arrays, pointArrays = [] }: Digested): number {
   let checked = 0;
-  for (const array of grid.arrays) {
+  for (const array of [...arrays, ...pointArrays]) {
     array.files.forEach((file, index) => {
       const expected = array.digests?.[index];
       if (expected === undefined) return;

@@ -26,6 +26,8 @@ export interface Grid {
   readonly slowArrays: readonly string[];
   /** How the full mesh is made of what is stored, where that is symmetry-reduced. */
   readonly unfolding?: Unfolding | undefined;
+  /** Of a symmetry-reduced grid: its points and weights. */
+  readonly pointArrays?: readonly ArrayPlan[] | undefined;
   /** Finer data that replace cells of this grid's mesh; empty for a view and for a patch. */
   readonly patches: readonly Grid[];
   /** Whatever the manifest keeps under provenance. */
@@ -91,6 +93,7 @@ function openArrays(
       bytes: size,
     },
     unfolding: reduced?.unfolding,
+    pointArrays: reduced?.arrays,
     arrays,
     slowArrays: arrays.filter((array) => array.axes[0] !== "k" && array.points > 1).map((array) => array.name),
     patches: [],

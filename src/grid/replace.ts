@@ -12,7 +12,7 @@ import {
 import { basename, dirname, join, resolve } from "node:path";
 import { type Fault, usageFault } from "../base/errors.js";
 import { quoted, readManifestBytes, reasonOf } from "./jsontext.js";
-import { reducedFiles, writerName } from "./layout.js";
+import { writerName } from "./layout.js";
 import { manifestName } from "./manifest.js";
 import { openGrid, parseManifest } from "./open.js";
 
@@ -52,8 +52,8 @@ function ownFiles(target: string, names: readonly string[], shown: string): void
     if (writer !== writerName) throw taken(shown, "is a band grid that this program did not write");
     const grid = openGrid(target);
     patches = grid.patches.map(({ facts }) => (facts.patch?.name ?? "").split(/[\\/]/)[0]);
-    allowed = new Set(grid.arrays.flatMap((array) => array.files.map((file) => file.name)));
-    if (grid.unfolding !== undefined) for (const name of Object.values(reducedFiles)) allowed.add(name);
+    const arrays = [...grid.arrays, ...(grid.pointArrays ?? [])];
+    allowed = new Set(arrays.flatMap((array) => array.files.map((file) => file.name)));
   } catch (error) {
     if (error instanceof Error && error.message.includes("did not write")) throw error;
     throw taken(shown, "exists and holds a band grid that cannot be read");
