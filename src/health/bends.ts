@@ -189,13 +189,15 @@ function completeness(equations: readonly BendEquation[]): BandCompleteness[] {
     });
 }
 
-/** What counts as closed; what the mesh cannot tell is taken as closed. */
+/** What counts as closed, beyond what the mesh cannot tell. */
 const closedPart = 0.1;
+/** A cut through the bands shows at the top first, and more than this, five times what the mesh cannot tell. */
+const cutPart = 0.3;
 
 function trustedUpTo(bands: readonly BandCompleteness[], bandCount: number): number | null {
-  if (bands.length < 2 || bandCount < 2) return null;
-  const open = bands.findIndex(({ missing, meshError }) => missing > Math.max(closedPart, 4 * meshError));
-  if (open < 0) return Infinity;
-  const good = bands.slice(0, open).findLast(({ missing }) => missing <= closedPart);
-  return good === undefined ? -Infinity : good.energyEv;
+  const top = bands.at(-1);
+  if (top === undefined || bands.length < 2 || bandCount < 2) return null;
+  if (top.missing < Math.max(cutPart, 5 * top.meshError)) return Infinity;
+  const open = bands.findIndex(({ missing, meshError }) => missing - meshError > closedPart);
+  return open <= 0 ? -Infinity : bands[open - 1].energyEv;
 }

@@ -10,6 +10,7 @@ import { type Count, checkLevel } from "./level.js";
 import { type HealthEffort, type HealthLine, openPoints, type PointSource, planLines, visitLines } from "./lines.js";
 import { checkReversal, type Reversal, storedNoise, toleranceFor } from "./reversal.js";
 import { checkSlopes } from "./slopes.js";
+import { checkMesh, checkSplittings, pairWeight } from "./splittings.js";
 
 /** What the checks found, and what they learned by the way. */
 export interface Health {
@@ -45,6 +46,8 @@ interface Gathered {
   readonly algebras: ReadonlyMap<string, Algebra>;
   readonly commuting: ReturnType<ReturnType<typeof createCommuting>["result"]> | undefined;
   readonly steps: readonly number[];
+  /** Pair weights about the level, by line. */
+  readonly weights: readonly number[];
   readonly points: number;
   readonly largestEv: number;
 }
@@ -55,6 +58,7 @@ function gather(source: PointSource, effort: HealthEffort): Gathered {
   const algebras = new Map(facts.moments.map(({ name }) => [name, createAlgebra(facts.bands)]));
   const commuting = createCommuting(facts.bands);
   const steps: number[] = [];
+  const weights: number[] = [];
   const tally = { points: 0, largestEv: 0 };
   const freeElectron = facts.hessian === "free-electron" ? hbar2OverMeEvA2 : 0;
   const visit = (line: HealthLine): void => {
@@ -63,6 +67,7 @@ function gather(source: PointSource, effort: HealthEffort): Gathered {
     for (const [name, algebra] of algebras) algebra.add(middle.moments.get(name) ?? []);
     commuting.add(line);
     steps.push(stepEv(line));
+    weights.push(pairWeight(middle, facts.fermiEv ?? 0, 1e-5).all);
     tally.points += line.points.length;
     for (const { energyEv } of line.points)
       tally.largestEv = Math.max(tally.largestEv, -energyEv[0], energyEv[energyEv.length - 1]);
@@ -74,6 +79,7 @@ function gather(source: PointSource, effort: HealthEffort): Gathered {
     algebras: new Map([...algebras].map(([name, algebra]) => [name, algebra.result()])),
     commuting: spinAxes === undefined ? undefined : commuting.result(),
     steps,
+    weights,
     ...tally,
   };
 }
@@ -83,7 +89,8 @@ const isFullMesh = ({ facts }: Grid): boolean =>
   facts.points === facts.divisions[0] * facts.divisions[1] * facts.divisions[2] && facts.patch === undefined;
 
 /**
- * Checks a grid at sampled points; memory stays at a few points. `count` counts electrons below a level; left out, the level is not checked.
+ * Checks a grid at sampled points; memory stays at a few points. `count` counts electrons below a level; left out, as in the quick form, what takes the
+ * energies of the whole mesh (the level, small splittings) is not looked at.
  * Only lines of a full mesh can be compared: of reduced lists only the level is looked at. Throws a Fault for files that cannot be read.
  */
 export function checkHealth(grid: Grid, effort: HealthEffort, count?: Count): Health {
@@ -92,7 +99,14 @@ export function checkHealth(grid: Grid, effort: HealthEffort, count?: Count): He
   const source = openPoints(grid);
   try {
     const sized = scaledTo(grid.facts.bands, effort);
-    return judgedHealth(grid, source, gather(source, sized), sized, level);
+    const gathered = gather(source, sized);
+    const health = judgedHealth(grid, source, gathered, sized);
+    const { fermiEv } = grid.facts;
+    const splittings =
+      count === undefined || fermiEv === undefined
+        ? []
+        : checkSplittings(source, gathered.weights, fermiEv, health.degenerateEv);
+    return { ...health, findings: [...health.findings, ...level, ...splittings] };
   } finally {
     source.close();
   }
@@ -111,13 +125,9 @@ export const unknownHealth: Health = {
   degenerateEv: 1e-5,
 };
 
-function judgedHealth(
-  { facts, arrays }: Grid,
-  source: PointSource,
-  { equations, algebras, commuting, steps, points, largestEv }: Gathered,
-  effort: HealthEffort,
-  level: readonly HealthFinding[],
-): Health {
+function judgedHealth(grid: Grid, source: PointSource, gathered: Gathered, effort: HealthEffort): Health {
+  const { facts, arrays } = grid;
+  const { equations, steps, points, largestEv } = gathered;
   const slopes = checkSlopes(equations, facts);
   const bends = checkBends(equations, {
     bandCount: facts.bands,
@@ -125,35 +135,41 @@ function judgedHealth(
     freeElectron: facts.hessian === "free-electron",
     levelEv: facts.fermiEv,
   });
-  const spin = algebras.get("spin");
-  const sizes = [...algebras].flatMap(([name, algebra]) =>
-    name === "spin" ? checkSpinSize(algebra) : name === "orbital" ? checkOrbitalSize(name, algebra) : [],
-  );
-  const usable = new Map([...algebras].filter(([name]) => name === "spin" || name === "orbital"));
-  const basis = slopes.tested && !slopes.agree && spin === undefined ? [] : checkBasis(basisFacts());
-  const flats = planLines(facts, effort).map((line) => line.flats[line.flats.length >> 1]);
-  const { reversal, findings: parity } = checkReversal(source, flats, storedNoise(arrays[0].type, largestEv));
+  const meanStepEv = Math.sqrt(steps.reduce((sum, s) => sum + s * s, 0) / Math.max(1, steps.length));
+  const middles = planLines(facts, effort).map((line) => line.flats[line.flats.length >> 1]);
+  const { reversal, findings: parity } = checkReversal(source, middles, storedNoise(arrays[0].type, largestEv));
+  const closed = slopes.agree && bends.findings.every(({ severity }) => severity === "note");
   return {
-    findings: [...slopes.findings, ...bends.findings, ...sizes, ...basis, ...parity, ...level],
+    findings: [
+      ...slopes.findings,
+      ...bends.findings,
+      ...momentFindings(gathered, slopes.agree, closed),
+      ...parity,
+      ...checkMesh(slopes.tested, meanStepEv, slopes.equations),
+    ],
     points,
     equations: slopes.equations,
     slopesLeft: slopes.tested ? slopes.left : null,
     bands: bends.bands,
     trustedEv: bends.trustedEv,
     reversal,
-    stepEv: Math.sqrt(steps.reduce((sum, s) => sum + s * s, 0) / Math.max(1, steps.length)),
+    stepEv: meanStepEv,
     degenerateEv: toleranceFor(reversal),
   };
+}
 
-  function basisFacts() {
-    // Changes from point to point mean nothing while the velocity itself is off.
-    const bonds = slopes.agree ? equations.bonds.filter(({ array }) => array === "velocity" || usable.has(array)) : [];
-    const closed = bends.findings.every(({ severity }) => severity === "note");
-    return {
-      bonds,
-      algebras: usable,
-      commuting: slopes.agree ? commuting : undefined,
-      trusted: slopes.agree && closed,
-    };
-  }
+/** Sizes, commutators and bases of spin and orbital moment; moments of other names may be anything. */
+function momentFindings(
+  { algebras, equations, commuting }: Gathered,
+  agree: boolean,
+  closed: boolean,
+): HealthFinding[] {
+  const known = new Map([...algebras].filter(([name]) => name === "spin" || name === "orbital"));
+  const sizes = [...known].flatMap(([name, algebra]) =>
+    name === "spin" ? checkSpinSize(algebra) : checkOrbitalSize(name, algebra),
+  );
+  // Changes from point to point mean nothing while the velocity itself is off.
+  const bonds = agree ? equations.bonds.filter(({ array }) => array === "velocity" || known.has(array)) : [];
+  const bases = checkBasis({ bonds, algebras: known, commuting: agree ? commuting : undefined, trusted: closed });
+  return [...sizes, ...bases];
 }

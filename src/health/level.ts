@@ -6,8 +6,12 @@ import { type HealthFinding, shown } from "./finding.js";
 /** Electrons per cell in stored states up to a level, eV. */
 export type Count = (levelEv: number) => number;
 
-/** 2% of the electrons of a cell, at least 0.1: beyond what the sharp step of a usual mesh leaves open, below any slip in counting. */
-const allowed = (electrons: number, points: number): number => Math.max(0.1, 0.02 * electrons, 8 / points);
+/**
+ * 2% of the electrons of a cell, at least 0.1: beyond what the sharp step of a usual mesh leaves open, below any slip in counting. On a small mesh
+ * a star of points with its pairs of bands (48 states in a crystal, 24 in a layer) may lie on either side.
+ */
+const allowed = ({ electrons = 0, points, periodic }: GridFacts): number =>
+  Math.max(0.1, 0.02 * electrons, (periodic === 3 ? 48 : 24) / points);
 
 interface Guess {
   readonly counted: number;
@@ -44,10 +48,10 @@ function guesses({ fermiEv = 0, electrons = 0, electronsPerBand }: GridFacts, co
 
 /** Compares level.fermi with level.electrons. `count` reads all energies. */
 export function checkLevel(facts: GridFacts, count: Count): HealthFinding[] {
-  const { fermiEv, electrons, points, bands, electronsPerBand } = facts;
+  const { fermiEv, electrons, bands, electronsPerBand } = facts;
   if (fermiEv === undefined || electrons === undefined) return [];
   const counted = count(fermiEv);
-  const room = allowed(electrons, points);
+  const room = allowed(facts);
   if (Math.abs(counted - electrons) <= room) return [];
   const found = guesses(facts, count, counted).filter((guess) => Math.abs(guess.counted - electrons) <= room);
   const [first] = found;

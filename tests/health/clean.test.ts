@@ -8,6 +8,7 @@ import type { GridLayout } from "../../src/grid/writer.js";
 import { checkHealth, fullEffort, quickEffort } from "../../src/health/health.js";
 import { buildSample, defaultMesh } from "../../src/samples/catalogue.js";
 import { writeSample } from "../../src/samples/write.js";
+import { healthNotes } from "../../src/studies/quick-health.js";
 import { countBelow } from "../../src/studies/reference.js";
 
 const root = mkdtempSync(join(tmpdir(), "tidegauge-clean-"));
@@ -19,13 +20,15 @@ const grids: Clean[] = [
   ["metal", {}, [6, 6, 6], "single"],
   ["metal", {}, [8, 8, 8], "double"],
   ["metal", { strain: "0.02" }, [5, 6, 7], "double"],
-  ["demo", {}, [6, 6, 6], "single"],
+  ["metal", {}, [4, 4, 4], "single"],
+  ["demo", {}, [5, 5, 5], "single"],
   ["kane-mele", {}, [12, 12, 1], "single"],
   ["kane-mele", { r: "0" }, [18, 12, 1], "double"],
   ["haldane", { M: "0.1" }, [12, 12, 1], "single"],
   ["sp-square", {}, [16, 16, 1], "single"],
   ["random", {}, [8, 8, 8], "single"],
   ["random", { seed: "7" }, [6, 6, 6], "double"],
+  ["random", { seed: "9" }, [5, 5, 5], "double"],
   ["random", { symmetry: "time-reversal", seed: "3" }, [8, 8, 8], "double"],
   ["random", { symmetry: "inversion", seed: "4" }, [8, 8, 8], "single"],
   ["random", { symmetry: "both", seed: "5", bands: "8" }, [8, 8, 8], "single"],
@@ -65,22 +68,20 @@ describe("no false alarm", () => {
       offset: defaultMesh(name, model).offset,
       layout: width === "single" ? layoutFor(model) : {},
     })!;
-    const started = performance.now();
     const quick = checkHealth(grid, quickEffort);
-    const middle = performance.now();
     const full = checkHealth(grid, fullEffort, (level) => countBelow(grid.facts, level));
-    if (process.env.SHOW)
-      console.log(
-        name,
-        JSON.stringify({
-          ...full,
-          quick: `${(middle - started).toFixed(0)} ms`,
-          all: `${(performance.now() - middle).toFixed(0)} ms`,
-          findings: full.findings.map((f) => `${f.severity} ${f.id} ${f.evidence}`),
-        }),
-      );
     rmSync(directory, { recursive: true });
-    for (const health of [quick, full])
-      expect(health.findings.filter(({ severity }) => severity !== "note")).toEqual([]);
+    if (name === "zincblende") {
+      expect(full.trustedEv).toBeLessThan(20);
+      expect(full.findings.map(({ id }) => id)).toEqual(["completeness-range"]);
+      expect(healthNotes(quick, 25, 1e-5).join()).toMatch(/good to 10% up to/);
+      expect(healthNotes(quick, 0, 1e-5)).toEqual([]);
+    }
+    for (const { findings, trustedEv } of [quick, full]) {
+      expect(findings.filter(({ severity }) => severity !== "note")).toEqual([]);
+      // Models in a finite basis close at all bands; plane waves cut to 30 bands do not.
+      if (name === "zincblende") expect(trustedEv).toBeGreaterThan(model.fermiEv ?? 0);
+      else expect([null, Infinity]).toContain(trustedEv);
+    }
   });
 });
