@@ -1,7 +1,6 @@
 // algebra.ts: does a moment obey the commutators and the eigenvalues of an angular momentum?
 import { createEigensolver } from "../kernel/eigen.js";
 import { type HealthFinding, shown } from "./finding.js";
-import type { HealthPoint } from "./lines.js";
 
 /** What the three matrices of a moment say of themselves, gathered over points. */
 export interface Algebra {
@@ -72,9 +71,6 @@ export function createAlgebra(bands: number) {
   };
   return { add, result };
 }
-
-/** Adds a point's moment. */
-export const momentOf = (point: HealthPoint, name: string): readonly Float64Array[] => point.moments.get(name) ?? [];
 
 const measured =
   "eigenvalues of each component, commutators and the square of the three components at sampled k points";

@@ -36,6 +36,8 @@ const grids: Clean[] = [
   ["dirac", {}, [20, 20, 1], "single"],
   ["rashba", {}, [20, 20, 1], "double"],
   ["luttinger", {}, [10, 10, 10], "single"],
+  ["luttinger", { ezz: "0.005" }, [6, 6, 6], "double"],
+  ["luttinger", { ezz: "-0.005" }, [8, 8, 8], "double"],
   ["zincblende", {}, [6, 6, 6], "double"],
 ];
 
