@@ -93,17 +93,18 @@ export interface BendFacts {
 /** Compares the change of the velocity with second derivatives and sums over bands. */
 export function checkBends({ bends }: Equations, { bandCount, agree, freeElectron, levelEv }: BendFacts): BendVerdict {
   const own = resolved(bends).filter(({ band }) => band !== undefined);
-  if (!agree || own.length < 6) return { findings: [], bands: [], trustedEv: null };
+  if (!agree || own.length < 12) return { findings: [], bands: [], trustedEv: null };
   const bands = completeness(own);
   const deep = own.filter(({ depth }) => depth > 2);
-  const equations = deep.length >= 6 ? deep : own;
+  const equations = deep.length >= 12 ? deep : own;
   const stated = fitSecond(equations, orders[0].places);
   const trustedEv = trustedUpTo(bands, bandCount);
   if (stated.leftAsStated < cleanPart / 2) return { findings: partly(bands, trustedEv, levelEv), bands, trustedEv };
   const fits = orders.map((order) => ({ order, fit: fitSecond(equations, order.places) }));
   const best = fits.reduce((a, b) => (b.fit.left < a.fit.left - 0.005 ? b : a));
   const renamed = best.order.words !== "" || Math.abs(best.fit.factor - 1) > 0.15;
-  if (renamed && best.fit.left < 0.02 && best.fit.left < 0.15 * stated.leftAsStated && !freeElectron)
+  const explained = best.order.words !== "" || slipsFor(best.fit.factor, hessianSlips).length > 0;
+  if (renamed && explained && best.fit.left < 0.02 && best.fit.left < 0.15 * stated.leftAsStated && !freeElectron)
     return { findings: [hessianFinding(best.order.words, best.fit, stated)], bands: [], trustedEv: null };
   if (trustedEv === null || trustedEv === Infinity) return { findings: [], bands, trustedEv };
   const fromBelow = trustedEv >= bands[0].energyEv;

@@ -77,7 +77,10 @@ const golden = [0.7548776662466927, 0.5698402909980532, 0.618033988749895];
 /** The i-th of a sequence of numbers that fill 0 .. n - 1 evenly, its own for each axis. */
 const spread = (i: number, axis: number, n: number): number => Math.floor(((0.37 + i * golden[axis]) % 1) * n);
 
-/** First points and edges of the lines to look at; the same for the same mesh. Edges with fewer than 3 points have none. */
+/** What a difference of sixth order takes; lower orders say too little. */
+const shortest = 5;
+
+/** First points and edges of the lines to look at; the same for the same mesh. Edges with fewer than 5 points have none. */
 export function planLines(
   { divisions, periodic }: GridFacts,
   effort: HealthEffort,
@@ -85,7 +88,7 @@ export function planLines(
   const lines: { flats: number[]; edge: number }[] = [];
   for (let edge = 0; edge < periodic; edge++) {
     const count = Math.min(divisions[edge], effort.pointsPerLine);
-    if (count < 3) continue;
+    if (count < shortest) continue;
     const taken = new Set<number>();
     for (let i = 0; i < effort.linesPerEdge; i++) {
       const at = [0, 1, 2].map((axis) =>

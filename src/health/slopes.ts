@@ -54,7 +54,7 @@ const predictedBy =
   };
 
 /** Fewer equations than this say nothing. */
-const fewest = 6;
+const fewest = 12;
 /** A part of the squared changes that clean but coarse data may leave. */
 export const cleanPart = 0.1;
 /** Above this the data have nothing to do with each other. */
@@ -81,7 +81,7 @@ const measured =
 export function checkSlopes({ slopes, bends }: Equations, facts: GridFacts): SlopeVerdict {
   const usable = resolved(slopes);
   const deep = usable.filter(({ depth, band }) => band !== undefined && depth > 2);
-  const equations = deep.length >= 2 * fewest ? deep : usable;
+  const equations = deep.length >= fewest ? deep : usable;
   const stated = fitted(equations, predictedBy(shapesOf(facts)[0]));
   const base = { equations: equations.length, left: stated.leftAsStated };
   if (equations.length < fewest) return { ...base, findings: [], tested: false, agree: false };
