@@ -57,8 +57,7 @@ export type ModelShare = (levelEv: number, out: Float64Array) => void;
 
 /**
  * What is left of the models' error once patches stand in for some cells, from how the neighbour defect is spread over the
- * cells: errors of single cells are taken to add up with one sign, and a cell divided into m along each edge keeps m^-order of its own.
- * Both are on the safe side where cells of the largest defect are replaced.
+ * cells: errors of single cells are taken to add up with one sign, which is on the safe side where cells of the largest defect are replaced.
  */
 export function modelShare(grid: Grid, job: DefectJob, tasks: readonly Task[], sections: Sections, order: number) {
   const columns = columnCount(job.plan);
@@ -66,7 +65,7 @@ export function modelShare(grid: Grid, job: DefectJob, tasks: readonly Task[], s
   const defects = cellDefects(grid.facts, tasks, sections, size);
   const keeps = new Float64Array(grid.facts.points).fill(1);
   for (const { facts } of grid.patches)
-    for (const cell of facts.patch?.cells ?? []) keeps[cell] = keptPart(facts, order);
+    for (const cell of facts.patch?.cells ?? []) keeps[cell] = keptPart(partsOf(facts), order);
   const left = new Float64Array(size);
   const all = new Float64Array(size);
   for (let cell = 0; cell < keeps.length; cell++)
@@ -79,10 +78,15 @@ export function modelShare(grid: Grid, job: DefectJob, tasks: readonly Task[], s
   return interpolated(job.levelsEv, columns, share);
 }
 
-/** Part of a cell's error that a patch leaves. */
-export function keptPart({ patch, periodic }: Pick<GridFacts, "patch" | "periodic">, order: number): number {
-  return patch === undefined ? 1 : pointsPerCell(patch) ** (-order / periodic);
-}
+/** Part of the fall that the neighbour defect promises and that came, on the mean of random layers whose cells were computed. */
+const delivered = 2 / 3;
+
+/** Part of a cell's error that is left when each edge is divided into `parts`: what goes with `parts^-order`, less what does not come. */
+export const keptPart = (parts: number, order: number): number => 1 - delivered * (1 - parts ** -order);
+
+/** Parts per edge of a patch's cells, on the mean. */
+const partsOf = ({ patch, periodic }: GridFacts): number =>
+  patch === undefined ? 1 : pointsPerCell(patch) ** (1 / periodic);
 
 function interpolated(levelsEv: readonly number[], columns: number, share: Float64Array): ModelShare {
   const last = levelsEv.length - 1;

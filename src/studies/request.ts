@@ -6,7 +6,7 @@ import { modelOrderOf } from "../curves/refined.js";
 import type { CurvesResult, ResponseCurve } from "../curves/result.js";
 import { cellDefects } from "../engine/defect-pass.js";
 import { cutTasks, type DefectJob } from "../engine/job.js";
-import { parentTasks, planDefects } from "../engine/patched.js";
+import { keptPart, parentTasks, planDefects } from "../engine/patched.js";
 import { type RunOptions, runTasks } from "../engine/run.js";
 import type { GridFacts } from "../grid/grid.js";
 import { type Grid, openGrid } from "../grid/open.js";
@@ -115,7 +115,7 @@ export async function request(directory: string, options: RequestOptions, run: R
   if (order.length === 0)
     throw usageFault("patches replace every cell of this mesh already", "Make a grid of the finer mesh, and ask it.");
   const picked = chosen(order, shares.overall, wanted ?? Math.max(1, Math.round(shareOfMesh * facts.points)));
-  const gain = 1 - divide ** -modelOrderOf(facts.hessian);
+  const gain = 1 - keptPart(divide, modelOrderOf(facts.hessian));
   return {
     format: "tidegauge.request/1",
     version: productVersion,

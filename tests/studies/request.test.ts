@@ -24,8 +24,8 @@ const rms = (row: readonly number[]): number => Math.sqrt(row.reduce((sum, x) =>
 interface Round {
   /** What remains of the models' error, as promised. */
   readonly left: number;
-  /** Of each response: rms over the levels of true error and bar, before and after. */
-  readonly rows: readonly { before: number; after: number; barBefore: number; barAfter: number }[];
+  /** Of each response: rms over the levels of true error and of the bar's model part before and after, and of the whole bar after. */
+  readonly rows: readonly { before: number; after: number; modelBefore: number; modelAfter: number; bar: number }[];
 }
 
 /** Grid -> request -> the model computes what was asked -> grid again; the truth is a plain sum over a mesh ten times as dense. */
@@ -58,23 +58,26 @@ async function loop(seed: number): Promise<Round> {
   const rows = before.responses.map((_, r) => ({
     before: off(before, truths[0], r),
     after: off(after, truths[1], r),
-    barBefore: rms(before.responses[r].error[0]),
-    barAfter: rms(after.responses[r].error[0]),
+    modelBefore: rms(before.responses[r].error_model[0]),
+    modelAfter: rms(after.responses[r].error_model[0]),
+    bar: rms(after.responses[r].error[0]),
   }));
   return { left: asked.cells[asked.cells.length - 1].left, rows };
 }
 
 describe("the loop sample -> request -> sample -> patch", () => {
   it("lowers the true error as promised or better, and the bar with it", async () => {
-    const rounds = [await loop(500), await loop(501), await loop(502)];
+    // The part of the fall that is promised was set on other seeds.
+    const rounds = [await loop(510), await loop(511), await loop(512)];
     const falls = rounds.flatMap(({ left, rows }) => rows.map(({ before, after }) => after / before / left));
     // Single curves may fall by less: cells' errors partly cancel, and not the same part before and after.
     expect(falls.reduce((sum, x) => sum + x, 0) / falls.length).toBeLessThan(1);
     for (const { left, rows } of rounds) {
       expect(left).toBeLessThan(0.8);
-      for (const { after, barBefore, barAfter } of rows) {
-        expect(barAfter).toBeLessThan(barBefore);
-        expect(after).toBeLessThan(2 * barAfter);
+      for (const { after, modelBefore, modelAfter, bar } of rows) {
+        // What sampling leaves is not promised to fall: the same samples are spread over more cells.
+        expect(modelAfter).toBeLessThan(modelBefore);
+        expect(after).toBeLessThan(2 * bar);
       }
     }
   });
@@ -93,8 +96,8 @@ describe("what is asked for", () => {
     expect(cells.map(({ cell }) => cell).sort((a, b) => a - b)).toEqual(Array.from({ length: 36 }, (_, i) => i));
     expect(cells.reduce((sum, { share }) => sum + share, 0)).toBeCloseTo(1, 12);
     for (let i = 1; i < cells.length; i++) expect(cells[i].share).toBeLessThanOrEqual(cells[i - 1].share * (1 + 1e-5));
-    // Third of the order of the models' error: 2^-3.4 of it stays where every cell is halved.
-    expect(cells[35].left).toBeCloseTo(2 ** -3.4, 12);
+    // Every cell halved: two thirds of what goes with 2^-3.4.
+    expect(cells[35].left).toBeCloseTo(1 - (2 / 3) * (1 - 2 ** -3.4), 12);
   });
 
   it("keeps images under the crystal's symmetry together", async () => {
