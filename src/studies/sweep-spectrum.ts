@@ -5,9 +5,8 @@ import { mostPackedNumbers, packWeights, type SpectrumBlock } from "../curves/sp
 import { columnCount } from "../engine/columns.js";
 import { type Computed, type SweepPlan, unitOf } from "./sweep-plan.js";
 
-/** The responses' columns and the states' of [node][column]. */
-function keptColumns(all: Float64Array, columns: number, kept: readonly number[]): Float64Array {
-  const rows = all.length / columns;
+/** The responses' columns and the states' of the first `rows` of [row][column]; boxes keep one node more than is read. */
+function keptColumns(all: Float64Array, rows: number, columns: number, kept: readonly number[]): Float64Array {
   return Float64Array.from(
     { length: rows * kept.length },
     (_, at) => all[Math.floor(at / kept.length) * columns + kept[at % kept.length]],
@@ -27,8 +26,8 @@ export function spectrumBlock(
   if (named.length * each > mostPackedNumbers || axis.levelsEv.length < 2) return undefined;
   const packed = (name: string): string =>
     packWeights(
-      keptColumns(sections[`${name}.base`], columns, kept),
-      keptColumns(sections[`${name}.nodes`], columns, kept),
+      keptColumns(sections[`${name}.base`], 1, columns, kept),
+      keptColumns(sections[`${name}.nodes`], axis.nodes.count, columns, kept),
     );
   const besides = method !== "points" && (named.length + 1) * each <= mostPackedNumbers;
   const { startEv, stepEv, count } = axis.nodes;
