@@ -1,6 +1,6 @@
 // report.ts: `tidegauge report`: one HTML file to look at and to hand on, from results of the other commands.
 import { existsSync, readFileSync, statSync } from "node:fs";
-import { basename, join } from "node:path";
+import { basename, dirname, join, resolve } from "node:path";
 import type { Command } from "commander";
 import { dataFault, usageFault } from "../../base/errors.js";
 import { productVersion } from "../../base/version.js";
@@ -45,6 +45,9 @@ function readResult(path: string): AnyResult {
   return parseResult(readFileSync(path, "utf8"), path);
 }
 
+/** The file and the directory that holds it: what lies above is nobody else's business. */
+const shortName = (path: string): string => join(basename(dirname(resolve(path))), basename(path));
+
 /** Script and style of the page, which stand beside the compiled program. */
 function bundled(name: string): string {
   return readFileSync(new URL(`../../report/page/${name}`, import.meta.url), "utf8");
@@ -70,7 +73,7 @@ export function register(program: Command, context: Context): void {
     const out = requiredOut(globals);
     checkedOut(globals);
     const paths = [...new Set(names.flatMap(filesOf))];
-    const results = paths.map((path): NamedResult => ({ name: path, result: readResult(path) }));
+    const results = paths.map((path): NamedResult => ({ name: shortName(path), result: readResult(path) }));
     const page = { title: globals.title, version: productVersion, made: today() };
     const text = pageHtml(results, { ...page, script: bundled("main.js"), style: bundled("page.css") });
     const bytes = Buffer.byteLength(text);
