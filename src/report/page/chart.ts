@@ -149,6 +149,11 @@ export function panelFigure(facts: PanelFacts): HTMLElement {
     y: { domain: [...range], axis: null },
     marks: marksOf(facts, scale, range),
   });
+  // The drawing is one picture with one name: the library's labels of its parts have no role that could carry them.
+  for (const part of drawing.querySelectorAll("[aria-label], [aria-description]")) {
+    part.removeAttribute("aria-label");
+    part.removeAttribute("aria-description");
+  }
   drawing.setAttribute("role", "img");
   drawing.setAttribute(
     "aria-label",

@@ -34,7 +34,11 @@ export function readOutTable(source: Source, curves: Curves, shown: Shown, level
     ["states per eV and cell", plain(read.states, 5), ""],
     ["electrons per cell", plain(read.electrons, 7), ""],
   ];
-  const table = tableElement(placeWords(source, curves, read), ["", "value(bar)", "plain sum"], [...rows, ...others]);
+  const table = tableElement(
+    placeWords(source, curves, read),
+    ["quantity", "value(bar)", "plain sum"],
+    [...rows, ...others],
+  );
   const exact = [...shown.responses.map((r) => read.values[r].value), read.states, read.electrons];
   for (const [at, row] of [...table.tBodies[0].rows].entries())
     row.cells[1].setAttribute("data-value", String(exact[at]));
