@@ -1,7 +1,7 @@
 // report.test.ts: does the page of `report`, in a real browser, open by itself, tell the numbers of the command, and serve everybody?
 import { readFileSync, rmSync, statSync, writeFileSync } from "node:fs";
-import { createRequire } from "node:module";
 import { join } from "node:path";
+import axe from "axe-core";
 import type { Browser } from "playwright-core";
 import { afterAll, beforeAll, expect, it } from "vitest";
 import type { CurvesResult } from "../../src/curves/result.js";
@@ -148,12 +148,11 @@ describeWithChromium("the page in chromium", (executablePath) => {
   });
 
   it("has no accessibility fault that axe-core finds, in light and dark, wide and narrow, and fits 380 px", async () => {
-    const axe = createRequire(import.meta.url).resolve("axe-core/axe.min.js");
     for (const width of [1400, 380])
       for (const dark of [false, true]) {
         const { page: tab } = await openFile(browser, at("all", "report.html"), { width, dark });
         await drawn(tab);
-        await tab.evaluate(readFileSync(axe, "utf8"));
+        await tab.evaluate(axe.source);
         const found = (await tab.evaluate("axe.run()")) as {
           violations: { id: string; impact: string; nodes: { html: string }[] }[];
         };
