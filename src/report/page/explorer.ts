@@ -24,25 +24,25 @@ function firstShown({ temperature_K, responses, level_eV }: CurvesResult): Shown
   };
 }
 
-const legendItems = [
-  ["live", "value and band of one bar"],
-  ["plain", "plain mesh sum"],
-  ["beside", "beside it"],
-  ["peak", "peak; hollow: not resolved"],
-] as const;
-
-const legend = (): HTMLElement =>
-  element(
+/** What the lines mean for what is shown. */
+function legendOf({ result }: Source, { points }: Curves, shown: Shown): HTMLElement {
+  const items = [["live", `${plain(shown.temperatureK)} K, with a band of one bar`]];
+  if (points !== undefined && result.sampling.method !== "points") items.push(["plain", "plain mesh sum"]);
+  if (shown.beside !== undefined) items.push(["beside", `${plain(result.temperature_K[shown.beside])} K`]);
+  items.push(["peak", "peak; hollow: not resolved"]);
+  return element(
     "p",
     { class: "legend" },
-    ...legendItems.map(([kind, words]) =>
+    ...items.map(([kind, words]) =>
       element("span", {}, element("i", { class: `swatch ${kind}`, "aria-hidden": "true" }), words),
     ),
   );
+}
 
 /** The places that are filled anew whenever something changes. */
 function places() {
   return {
+    legend: element("div", {}),
     stack: element("div", { class: "stack" }),
     cursor: element("div", { class: "cursor", "aria-hidden": "true" }),
     readOut: element("div", { class: "readout scroll", tabindex: "0", role: "region", "aria-label": "Read-out" }),
@@ -72,7 +72,7 @@ function filesBar(source: Source, id: string, now: () => { curves: Curves; shown
 /** Fills `root` with everything about one sweep. `id` is unique in the page. */
 export function startExplorer(root: HTMLElement, result: CurvesResult, id: string): void {
   const source = openSource(result);
-  const { stack, cursor, readOut, status, peaks } = places();
+  const { legend, stack, cursor, readOut, status, peaks } = places();
   let shown = firstShown(result);
   let panels: HTMLElement[] = [];
   let waiting = false;
@@ -96,6 +96,7 @@ export function startExplorer(root: HTMLElement, result: CurvesResult, id: strin
     waiting = false;
     panels = panelsOf(source, curvesNow(), shown, Math.max(260, stack.clientWidth));
     stack.replaceChildren(...panels, cursor);
+    legend.replaceChildren(legendOf(source, curvesNow(), shown));
     for (const control of controls) control.update(shown, curvesNow());
     show(held());
     peaks.replaceChildren(peaksTable(source, curvesNow(), shown));
@@ -111,7 +112,7 @@ export function startExplorer(root: HTMLElement, result: CurvesResult, id: strin
   });
   const side = element("div", { class: "side" }, ...controls.map((control) => control.root), readOut, status);
   const files = filesBar(source, id, () => ({ curves: curvesNow(), shown, panels }));
-  const main = element("div", { class: "main" }, legend(), stack, peaks, files);
+  const main = element("div", { class: "main" }, legend, stack, peaks, files);
   root.replaceChildren(element("div", { class: "explorer" }, side, main));
   draw();
   let widthPx = stack.clientWidth;
