@@ -76,7 +76,7 @@ export function temperatureControl({ result, live }: Source, id: string, change:
 function temperatureHint(live: Source["live"]): string {
   if (live === undefined)
     return "This result carries no spectra, or its window ends too soon: only the computed temperatures can be shown.";
-  return `Read in the page from the spectra of the sweep, ${plain(Math.ceil(live.leastK))} to ${plain(Math.floor(live.mostK))} K; at the buttons as computed. Between computed temperatures a bar is the larger of the two neighbouring ones.`;
+  return `Read in the page from the spectra of the sweep, ${plain(Math.ceil(live.leastK))} to ${plain(Math.floor(live.mostK))} K; at the buttons as computed. Between computed temperatures a bar is the larger of the two neighbouring ones; a sweep asked for a colder temperature may take finer energy nodes and differ by its resolution.`;
 }
 
 /** Level and doping: two names of one cursor; the one moved last stays when the temperature changes. */
