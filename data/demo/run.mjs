@@ -166,6 +166,11 @@ function reading() {
   );
 }
 
+function page() {
+  const results = [place("vadholmium-curves"), place("haldane-curves")];
+  tidegauge(["report", ...results, "--title", "Vadholmium and a Haldane layer", "--quiet", "--out", place("page")]);
+}
+
 function closing() {
   heading("4. Before you believe it");
   say(
@@ -176,9 +181,12 @@ function closing() {
     "  story depends on a value, sample denser (--mesh 16 16 16), ask for 1% (the default), and see whether it stays.",
   );
   heading("5. Pictures and numbers");
+  page();
   say(
+    "",
+    `${place("page", "report.html")}   everything on one page (open it in a browser): move the temperature and the doping`,
     place("haldane-curves", "curves.svg"),
-    `${place("vadholmium-curves", "curves.svg")}   (open it in a browser)`,
+    place("vadholmium-curves", "curves.svg"),
     `${place("vadholmium-curves", "curves.csv")}   one row per level; curves.json holds the job, to run again with --job`,
     "",
     `Done in ${((Date.now() - started) / 1000).toFixed(0)} s. ${out} may be deleted.`,

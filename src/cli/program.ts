@@ -16,6 +16,7 @@ const commands: Readonly<Record<string, () => Promise<{ readonly register: Regis
   converge: () => import("./commands/converge.js"),
   request: () => import("./commands/request.js"),
   angle: () => import("./commands/angle.js"),
+  report: () => import("./commands/report.js"),
   pack: () => import("./commands/pack.js"),
   sample: () => import("./commands/sample.js"),
 };

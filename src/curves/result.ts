@@ -1,4 +1,5 @@
 // result.ts: the result of a sweep, as it is written to curves.json and handed to charts.
+import type { SpectrumBlock } from "./spectrum-block.js";
 
 /** [temperature][level] */
 export type Table = number[][];
@@ -63,4 +64,6 @@ export interface CurvesResult {
   };
   /** Always begins with "intrinsic only, rigid band". */
   notes: string[];
+  /** What the curves were read from, for reading them at other temperatures; absent where it is too large. */
+  spectrum?: SpectrumBlock;
 }

@@ -2,6 +2,7 @@
 import * as z from "zod";
 import { dataFault } from "../base/errors.js";
 import type { CurvesResult } from "../curves/result.js";
+import { mostPackedNumbers, unpackWeights } from "../curves/spectrum-block.js";
 
 /** `null` is what NaN was written as. */
 const entry = z.union([z.number(), z.null().transform(() => Number.NaN)]);
@@ -20,6 +21,19 @@ const response = z.looseObject({
   error_model: tableOf,
   points: tableOf,
   thermal: companion.optional(),
+});
+
+const spectrum = z.object({
+  start_eV: z.number(),
+  step_eV: z.number().positive(),
+  count: count.max(mostPackedNumbers),
+  resolution_eV: z.number().nonnegative(),
+  warm_eV: z.number().nonnegative(),
+  columns: z.array(z.string()).min(2),
+  factor: z.array(z.number()),
+  weights: z.base64(),
+  correction: z.base64().optional(),
+  points: z.base64().optional(),
 });
 
 /** The border check of curves.json; fields that a later version adds pass through unchanged. */
@@ -49,6 +63,7 @@ const curvesSchema = z.looseObject({
     .object({ method: z.enum(["refine", "cells", "points"]), stored: count, samples: count, deepest: count })
     .catchall(z.union([entry, z.string()])),
   notes: z.array(z.string()),
+  spectrum: spectrum.optional(),
 });
 
 const cure = "Write the file again with `tidegauge sweep GRID --out DIR`; it must not be edited by hand.";
@@ -87,6 +102,20 @@ function checkShapes(result: CurvesResult, source: string): void {
   }
 }
 
+/** The spectra of a result must be of its responses and as long as they say. */
+function checkSpectrum({ spectrum: block, responses }: CurvesResult, source: string): void {
+  if (block === undefined) return;
+  const expected = [...responses.map(({ name }) => name), "states"];
+  const parts = [block.weights, block.correction, block.points].filter((part) => part !== undefined);
+  const same = expected.length === block.columns.length && expected.every((name, at) => name === block.columns[at]);
+  if (
+    !same ||
+    block.factor.length !== expected.length ||
+    parts.some((part) => unpackWeights(part, block) === undefined)
+  )
+    throw dataFault(`${source}: spectrum does not fit the responses or is not as long as it says.`, cure);
+}
+
 function parsedJson(text: string, source: string): unknown {
   try {
     return JSON.parse(text.replace(/^\ufeff/, ""));
@@ -108,5 +137,6 @@ export function parseCurves(text: string, source = "curves.json"): CurvesResult 
     throw dataFault(`${source} is not a tidegauge result: ${where}: ${first.message}.`, cure);
   }
   checkShapes(checked.data, source);
+  checkSpectrum(checked.data, source);
   return checked.data;
 }

@@ -13,6 +13,7 @@ import { healthNotes, quickHealth } from "./quick-health.js";
 import { countBelow } from "./reference.js";
 import { curvesOf, type ReadCurves, spectraFacts } from "./sweep-curves.js";
 import { type Computed, type SweepPlan, unitOf } from "./sweep-plan.js";
+import { spectrumBlock } from "./sweep-spectrum.js";
 
 /** Told to every reader of a result. */
 export const intrinsicOnly = "intrinsic only, rigid band";
@@ -150,6 +151,7 @@ export function assembleResult(planned: SweepPlan, computed: Computed): CurvesRe
   const doping = dopingTable(electrons, levels, planned);
   const density = densityPerCell(facts);
   const { title, sha256, bands, divisions, periodic, points } = facts;
+  const spectrum = spectrumBlock(planned, computed);
   return {
     format: "tidegauge.curves/1",
     version: productVersion,
@@ -167,5 +169,6 @@ export function assembleResult(planned: SweepPlan, computed: Computed): CurvesRe
     drude: drudeCurves(planned, slopes),
     sampling: samplingOf(planned, computed),
     notes: notesOf(planned),
+    ...(spectrum === undefined ? {} : { spectrum }),
   };
 }

@@ -1,4 +1,4 @@
-// demo.test.ts: does the demo run from end to end, tell its story from its own numbers, and own up to its limits?
+// demo.test.ts: does the demo run from end to end, tell its story from its own numbers, write its page, and own up to its limits?
 import { spawnSync } from "node:child_process";
 import { readdirSync, readFileSync, rmSync } from "node:fs";
 import { join } from "node:path";
@@ -25,6 +25,7 @@ it("is told on a small mesh: the quantised layer, the metal beside its dense val
     expect(readdirSync(join(directory, name)).sort()).toEqual(["curves.csv", "curves.json", "curves.svg"]);
     expect(readFileSync(join(directory, name, "curves.svg"), "utf8")).toMatch(/^<svg /);
   }
+  expect(readFileSync(join(directory, "page", "report.html"), "utf8")).toMatch(/^<!doctype html>/);
 });
 
 it("promises in package.json what is there: npm run demo", () => {

@@ -6,6 +6,7 @@ set -u
 needs=(
   "python3-numpy|/usr/bin/python3 -c 'import numpy' || python3 -c 'import numpy'|the suites that compare with NumPy (tests/oracle)"
   "gfortran|gfortran --version|the suites that read files written by Fortran"
+  "chromium|chromium --version|the suites that open pages in a real browser (tests/pages)"
 )
 
 present() { bash -c "$1" >/dev/null 2>&1; }

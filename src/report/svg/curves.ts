@@ -1,10 +1,13 @@
 // curves.ts: what does the picture of a sweep show, and where does everything stand on it?
 import type { CurvesResult } from "../../curves/result.js";
 import { cleanLine } from "../clean.js";
+import { quantityWords } from "../quantities.js";
 import { unitInPicture } from "./lettering.js";
 import { temperatureColours } from "./palette.js";
 import { type Panel, panelAt, pictureSvg } from "./stack.js";
 import { footerAt, legendAt, levelAxisAt, titleAt } from "./surroundings.js";
+
+export { quantityWords } from "../quantities.js";
 
 export interface CurvesSvgOptions {
   /** Plain text; default: the grid's title. */
@@ -13,18 +16,6 @@ export interface CurvesSvgOptions {
   widthPx?: number;
   /** Prefix of all ids, to be set when several pictures stand in one page; default "curves". */
   idPrefix?: string;
-}
-
-const quantities: Record<string, string> = {
-  charge: "Anomalous Hall conductivity",
-  spin: "Spin Hall conductivity",
-  orbital: "Orbital Hall conductivity",
-};
-
-/** "spin:xy:z" -> "Spin Hall conductivity"; another moment is named by its own name. */
-export function quantityWords(response: string): string {
-  const moment = cleanLine(response).split(":")[0];
-  return Object.hasOwn(quantities, moment) ? quantities[moment] : `Hall conductivity of ${moment}`;
 }
 
 function panelsOf(result: CurvesResult, colours: readonly string[]): Panel[] {
