@@ -11,15 +11,15 @@ import { answer, expectWithin, sampled } from "./runs.js";
 describe("gold with a spin-orbit strength of 0.1 meV, 6^3", () => {
   it("the plain sum is off by thousands and more; the refined value is nothing within 2 bars, and below 10", async () => {
     const grid = await sampled("metal", { mesh: [6, 6, 6], set: { xi: 0.0001 } });
-    for (const level of [-3.2, -2.4]) {
+    for (const level of [-3.2]) {
       const at = ["--from", level, "--to", level, "--points", 1, "--temperature", 300, "--workers", 1];
       const asked = ["--response", "spin:hall", "--samples", 10_000];
       const { responses } = (await answer(["sweep", grid, ...asked, ...at])) as CurvesResult;
       const { value, error, points, unit } = responses[0];
       expect(unit).toBe("(hbar/e) S/cm");
-      expect(Math.abs(points[0][0])).toBeGreaterThan(1000); // measured -7.4e6 and -4.6e6
-      expectWithin(value[0][0], 0, 10, `${level} eV`); // measured 3.4 and 2.6
-      expectWithin(value[0][0], 0, 2 * error[0][0], `${level} eV, bars`); // bars 5.9 and 1.9
+      expect(Math.abs(points[0][0])).toBeGreaterThan(1000); // measured -7.4e6
+      expectWithin(value[0][0], 0, 10, `${level} eV`); // measured 3.4
+      expectWithin(value[0][0], 0, 2 * error[0][0], `${level} eV, bars`); // bar 5.9
     }
   });
 });
