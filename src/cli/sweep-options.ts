@@ -3,8 +3,9 @@ import { availableParallelism } from "node:os";
 import type { Command } from "commander";
 import { z } from "zod";
 import type { RunOptions } from "../engine/run.js";
+import { grouped } from "../report/numbers.js";
 import { mistakesOf } from "../studies/quick-health.js";
-import { type SweepOptions, sweepOptions } from "../studies/sweep.js";
+import { defaultSampling, type SweepOptions, sweepOptions } from "../studies/sweep.js";
 import type { Context } from "./context.js";
 import { namedGrids } from "./grids.js";
 import { readJob } from "./jobfile.js";
@@ -79,7 +80,10 @@ export function addSweepOptions(command: Command, study: Partial<StudyWords> = {
       "--accuracy <SHARE>",
       `what refine aims at, in parts of each response's largest value (default ${words.accuracy})`,
     )
-    .option("--samples <N>", "about how many samples refine may spend (default 200,000 and 100 per stored point)")
+    .option(
+      "--samples <N>",
+      `about how many samples refine may spend (default ${grouped(defaultSampling.base)} and ${defaultSampling.perPoint} per stored point)`,
+    )
     .option(
       "--degenerate <EV>",
       "pairs of bands closer than this are taken as degenerate (default 1e-5, or ten times what Kramers pairs are split by on disk)",

@@ -160,7 +160,7 @@ function modelSquares(sections: Sections, facts: RefinedFacts, reading: Reading)
   const coarse = refinedSampler(sections, "coarse", { ...how, axis: coarseNodes(axis) }, detail * subMeshes.stride);
   const ofFine = new Float64Array(columns);
   const ofCoarse = new Float64Array(columns);
-  const scale = 1 / (subMeshes.stride ** (facts.hessian === "none" ? lowerOrder : modelOrder) - 1);
+  const scale = 1 / (subMeshes.stride ** modelOrderOf(facts.hessian) - 1);
   return (levelEv, temperatureK, out) => {
     fine(levelEv, temperatureK, ofFine);
     coarse(levelEv, temperatureK, ofCoarse);

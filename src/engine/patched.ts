@@ -1,5 +1,6 @@
 // patched.ts: joins what patches give to the parent's spectra, and says how much of the models' error they leave.
 import { boltzmannEvPerK } from "../base/constants.js";
+import { defectDetail } from "../curves/refined.js";
 import type { GridFacts } from "../grid/grid.js";
 import type { Grid } from "../grid/open.js";
 import { pointsPerCell } from "../grid/patches.js";
@@ -30,12 +31,9 @@ export function joinPatches(sections: Sections): Sections {
   return joined;
 }
 
-/** Numbers that the defects of all cells may take: 64 MB in two copies. */
+/** Numbers that the defects of all cells may take: 32 MB, and four times that while they are gathered. */
 const mostNumbers = 1 << 22;
 const mostLevels = 16;
-
-/** The defect is blurred at least so much of the energy that the mesh resolves; see curves/refined. */
-const leastBlur = 1 / 12;
 
 /** The job that finds every cell's defect at a few levels across the window, as many as memory allows. */
 export function planDefects(job: RefineJob, points: number): DefectJob {
@@ -48,7 +46,7 @@ export function planDefects(job: RefineJob, points: number): DefectJob {
     levelsEv: Array.from({ length: count }, (_, i) =>
       count === 1 ? (first + last) / 2 : first + ((last - first) * i) / (count - 1),
     ),
-    thermalEv: Math.max(job.regularEv * leastBlur, Math.min(...temperaturesK) * boltzmannEvPerK),
+    thermalEv: Math.max(job.regularEv * defectDetail, Math.min(...temperaturesK) * boltzmannEvPerK),
   };
 }
 

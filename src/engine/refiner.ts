@@ -16,7 +16,14 @@ import { spanWidths } from "./pass.js";
 /** Depths that are counted apart. */
 export const depthsCounted = 24;
 /** Places in the counters section. */
-export const counters = { samples: 0, defectSamples: 1, splitCells: 2, unresolved: 3, depths: 4 } as const;
+export const counters = {
+  samples: 0,
+  defectSamples: 1,
+  splitCells: 2,
+  splitVolume: 3,
+  unresolved: 4,
+  depths: 5,
+} as const;
 
 /** One mesh to refine: the stored one, or a contained sub-mesh that shows how the model's error falls with the mesh step. */
 export interface RefinerPlan {
@@ -97,7 +104,11 @@ export function createRefiner(plan: RefinerPlan): Refiner {
       const cost = tree(root, job.samplesPerCell);
       tally[counters.samples] += cost.samples;
       tally[counters.unresolved] += cost.unresolved;
-      if (cost.deepest > 1) tally[counters.splitCells]++;
+      if (cost.deepest > 1) {
+        tally[counters.splitCells]++;
+        // A patch's cells are parts of one of the mesh's.
+        tally[counters.splitVolume] += weight;
+      }
       tally[counters.depths + Math.min(cost.deepest, depthsCounted - 1)]++;
       serve(links);
       for (const [i, t] of steps.entries()) {

@@ -29,6 +29,16 @@ export interface PatchCells {
   readonly cells: Int32Array;
 }
 
+/** Directions of the second derivatives d2H/dk_a dk_b, in the order of the format: xx, yy, zz, yz, zx, xy. */
+export const hessianPairs: readonly (readonly [number, number])[] = [
+  [0, 0],
+  [1, 1],
+  [2, 2],
+  [1, 2],
+  [2, 0],
+  [0, 1],
+];
+
 export type HessianKind = "none" | "free-electron" | "array";
 
 /** The facts of one band grid, in canonical units; plain data, safe to send to a worker. */

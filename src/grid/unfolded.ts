@@ -1,19 +1,16 @@
 // unfolded.ts: reads a reduced grid as the full mesh: every point's matrices turned from those of its star's stored point.
-import type { Block, BlockReader, GridFacts, MatrixBlock, MomentFacts } from "./grid.js";
+import {
+  type Block,
+  type BlockReader,
+  type GridFacts,
+  hessianPairs,
+  type MatrixBlock,
+  type MomentFacts,
+} from "./grid.js";
 import { createKeeper } from "./kept.js";
 import { checkRange } from "./range.js";
 import type { Unfolding } from "./stars.js";
 import { determinant, type KOperation, type Rows } from "./symmetry.js";
-
-/** pair index of the second derivatives: xx, yy, zz, yz, zx, xy. */
-const pairs: readonly (readonly [number, number])[] = [
-  [0, 0],
-  [1, 1],
-  [2, 2],
-  [1, 2],
-  [2, 0],
-  [0, 1],
-];
 
 /** out component = sum of factor times component; conjugated under time reversal. */
 type Mixing = readonly (readonly number[])[];
@@ -22,8 +19,8 @@ const timesRows = (rotation: Rows, factor: number): Mixing => rotation.map((row)
 
 /** d2H/dk_a dk_b turns as a tensor: R R W; a mixed pair stands for both orders. */
 function pairMixing(r: Rows): Mixing {
-  return pairs.map(([a, b]) =>
-    pairs.map(([c, d]) => (c === d ? r[a][c] * r[b][c] : r[a][c] * r[b][d] + r[a][d] * r[b][c])),
+  return hessianPairs.map(([a, b]) =>
+    hessianPairs.map(([c, d]) => (c === d ? r[a][c] * r[b][c] : r[a][c] * r[b][d] + r[a][d] * r[b][c])),
   );
 }
 

@@ -1,6 +1,5 @@
 // continuum.ts: continuum (k.p) Hamiltonians, polynomials of second order in k, cut to a box around the origin.
-import type { Triple } from "../grid/grid.js";
-import { hessianPairs } from "./hops.js";
+import { hessianPairs, type Triple } from "../grid/grid.js";
 import { zeroMatrix } from "./matrix.js";
 import type { ComplexMatrix, HamiltonianAtK } from "./model.js";
 

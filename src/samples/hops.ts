@@ -1,5 +1,5 @@
 // hops.ts: H(k) of a tight-binding crystal as a Fourier sum over hops, with exact first and second derivatives.
-import type { Triple } from "../grid/grid.js";
+import { hessianPairs, type Triple } from "../grid/grid.js";
 import { zeroMatrix } from "./matrix.js";
 import type { ComplexMatrix, HamiltonianAtK } from "./model.js";
 
@@ -10,16 +10,6 @@ export interface Hop {
   /** eV. */
   readonly amplitude: ComplexMatrix;
 }
-
-/** Index pairs of the second derivatives, in the order of the format: xx, yy, zz, yz, zx, xy. */
-export const hessianPairs: readonly (readonly [number, number])[] = [
-  [0, 0],
-  [1, 1],
-  [2, 2],
-  [1, 2],
-  [2, 0],
-  [0, 1],
-];
 
 function addTo(out: ComplexMatrix, term: ComplexMatrix, re: number, im: number): void {
   if (re === 0 && im === 0) return;

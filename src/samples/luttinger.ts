@@ -1,7 +1,8 @@
 // luttinger.ts: the spherical Luttinger valence band, with strain, cut to a box.
 import { hbar2OverMeEvA2 } from "../base/constants.js";
+import { hessianPairs } from "../grid/grid.js";
 import { boxVectors, foldIntoBox, polynomialAt } from "./continuum.js";
-import { hessianPairs } from "./hops.js";
+
 import { angularMomentum, identity, productOf, scaled, sumOf, zeroMatrix } from "./matrix.js";
 import type { ComplexMatrix, SampleModel } from "./model.js";
 import { declareSample, real, type ValuesOf, withDefaults } from "./parameter.js";

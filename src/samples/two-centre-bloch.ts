@@ -7,16 +7,6 @@ import { halfShell, type Vectors } from "./two-centre-lattice.js";
 
 /** Value, 3 first and 6 second derivatives: index 0; 1..3 = x, y, z; 4..9 = xx, yy, zz, yz, zx, xy. */
 export const orders = 10;
-/** The two directions of each second derivative, in the order of the pairs. */
-export const pairDirections: readonly (readonly [number, number])[] = [
-  [0, 0],
-  [1, 1],
-  [2, 2],
-  [1, 2],
-  [2, 0],
-  [0, 1],
-];
-
 /** Sums one k point into out[order * 81 + 9 * bra + ket]; orders from `count` on are left alone (1, 4 or 10 orders). */
 export type BlochSum = (k: Triple, count: number, out: Float64Array) => void;
 

@@ -1,5 +1,6 @@
 // two-centre-orthogonal.ts: H~ = S^(-1/2) H S^(-1/2) with exact first and second derivatives, real symmetric 9 x 9.
-import { orders, pairDirections } from "./two-centre-bloch.js";
+import { hessianPairs } from "../grid/grid.js";
+import { orders } from "./two-centre-bloch.js";
 import { diagonaliseReal9 } from "./two-centre-jacobi.js";
 
 const n = 9;
@@ -105,7 +106,7 @@ function firstOrder(w: Workspace, axis: number, out: Float64Array): void {
 
 /** d_ab H~ = X A + (X A)^T + Y + Y^T + A (d2H) A with X = d2A H + dA_a dH_b + dA_b dH_a and Y = dA_a H dA_b. */
 function secondOrder(w: Workspace, pair: number, out: Float64Array): void {
-  const [a, b] = pairDirections[pair];
+  const [a, b] = hessianPairs[pair];
   fillSecondDerivativeOfRoot(w, pair);
   multiply(w.d2a, 0, w.h, 0, w.sum, 0);
   multiply(w.da, a * size, w.h, (1 + b) * size, w.scratch, 0);
@@ -117,7 +118,7 @@ function secondOrder(w: Workspace, pair: number, out: Float64Array): void {
 }
 
 function fillSecondDerivativeOfRoot({ s, first, second, d2a }: Workspace, pair: number): void {
-  const [a, b] = pairDirections[pair];
+  const [a, b] = hessianPairs[pair];
   const sa = (1 + a) * size;
   const sb = (1 + b) * size;
   for (let i = 0; i < n; i++)

@@ -41,6 +41,8 @@ export interface SweepPlan {
   /** Energy that the mesh resolves, for `refine`; 0 otherwise. */
   readonly regularEv: number;
   readonly job: SweepJob;
+  /** Cells of the mesh that patches replace. */
+  readonly patchedCells: number;
   readonly facts: GridFacts;
   readonly reference: ReferenceLevel;
   readonly options: SweepOptions & { readonly degenerate: number };
@@ -62,7 +64,8 @@ export function planSweep(directory: string, options: SweepOptions, part: SweptP
       "Let --from lie below --to, or give --points 1 with both equal.",
     );
   const { view } = part;
-  const { facts } = openGrid(directory, view);
+  const { facts, patches } = openGrid(directory, view);
+  const patchedCells = patches.reduce((sum, patch) => sum + (patch.facts.patch?.cells.length ?? 0), 0);
   const plan = planResponses(options.response ?? defaultResponses(facts), facts);
   const reference = part.reference ?? referenceLevel(storedFacts(facts));
   const temperatures = [...new Set(options.temperature)].sort((a, b) => a - b);
@@ -82,7 +85,7 @@ export function planSweep(directory: string, options: SweepOptions, part: SweptP
     axis: planAxis(window, temperatures, marginForDefect * regularEv),
   };
   for (const column of plan.columns) unitOf(column.carrier, facts, options);
-  return { job, facts, reference, options: { ...options, degenerate }, regularEv };
+  return { job, facts, reference, options: { ...options, degenerate }, regularEv, patchedCells };
 }
 
 /** Unit and prefactor of a carrier's responses, as the options want them. */

@@ -100,7 +100,8 @@ function refinementNotes(facts: GridFacts): string[] {
   return notes;
 }
 
-function notesOf({ job, facts, reference, options }: SweepPlan): string[] {
+function notesOf(planned: SweepPlan): string[] {
+  const { job, facts, reference, options } = planned;
   const notes = [
     intrinsicOnly,
     `levels are relative to ${reference.levelEv.toFixed(6)} eV, ${reference.origin}`,
@@ -110,6 +111,10 @@ function notesOf({ job, facts, reference, options }: SweepPlan): string[] {
   if (options.broaden > 0) notes.push(`denominators are broadened by ${options.broaden} eV`);
   if (job.method === "cells")
     notes.push(`energy resolution at 0 K: ${(job.axis.nodes.stepEv * 1000).toPrecision(3)} meV`);
+  if (planned.patchedCells > 0)
+    notes.push(
+      `patches hold finer data for ${planned.patchedCells} of the mesh's ${facts.points} cells; coarser meshes inside it, from which rates and the bars' model part come, are without them`,
+    );
   if (job.method === "refine") notes.push(...refinementNotes(facts));
   else if (spreadSubMeshes(facts) === undefined)
     notes.push("no error bar: the mesh contains no regular sub-mesh (its divisions share no factor 2, 3 or 5)");
@@ -131,7 +136,7 @@ function samplingOf({ job, facts }: SweepPlan, { sections, refined }: Computed):
     deepest: tally.subarray(counters.depths).findLastIndex((cells) => cells > 0),
     samples_for_error: forError,
     cells_split: tally[counters.splitCells],
-    zone_refined: tally[counters.splitCells] / points,
+    zone_refined: tally[counters.splitVolume] / points,
     unresolved: tally[counters.unresolved],
     regular_eV: refined.regularEv,
   };

@@ -14,8 +14,10 @@ import { assembleResult } from "./sweep-result.js";
 export { type SweepOptions, sweepOptions } from "./sweep-plan.js";
 export { intrinsicOnly } from "./sweep-result.js";
 
-/** Samples that may be spent where the user names no number. */
-const defaultSamples = (points: number): number => 200_000 + 100 * points;
+/** Samples that may be spent where the user names no number: a base, and some for each stored point. */
+export const defaultSampling = { base: 200_000, perPoint: 100 } as const;
+
+const defaultSamples = (points: number): number => defaultSampling.base + defaultSampling.perPoint * points;
 
 /** Computes the spectra of a planned sweep; with "locate" (one level and temperature) also what every cell, band and pair adds, see engine/locator. */
 export async function computeSweep(

@@ -82,6 +82,17 @@ describe("a patch on some cells", () => {
   });
 });
 
+describe("what a patched sweep says of itself", () => {
+  it("names the patched cells, and counts split patch cells as the parts of the zone that they are", async () => {
+    const [patched] = doubled(2, 6);
+    const { notes, sampling } = await run(patched, "refine", 2);
+    expect(notes.join("\n")).toContain("patches hold finer data for 36 of the mesh's 36 cells");
+    expect(sampling.zone_refined).toBeGreaterThan(0);
+    expect(sampling.zone_refined).toBeLessThanOrEqual(1);
+    expect(sampling.zone_refined).toBeCloseTo(Number(sampling.cells_split) / (4 * 36), 12);
+  });
+});
+
 describe("links", () => {
   it("inside one mesh every neighbour counts once", () => {
     expect(allLinks(3)).toEqual({ models: new Float64Array(6).fill(1), truth: 6 });

@@ -2,8 +2,8 @@
 import fc from "fast-check";
 import { describe, expect, it } from "vitest";
 import type { Triple } from "../../src/grid/grid.js";
+import { hessianPairs } from "../../src/grid/grid.js";
 import { buildSample } from "../../src/samples/catalogue.js";
-import { hessianPairs } from "../../src/samples/hops.js";
 import { adjointOf, identity, kroneckerOf, pauli, productOf, scaled, sumOf } from "../../src/samples/matrix.js";
 import type { ComplexMatrix, SampleModel } from "../../src/samples/model.js";
 import { curvature, jacobiEigen, reciprocal } from "./naive.js";
