@@ -8,6 +8,7 @@ import { addEquations, type Equations, noEquations, stepEv } from "./equations.j
 import type { HealthFinding } from "./finding.js";
 import { type Count, checkLevel } from "./level.js";
 import { type HealthEffort, type HealthLine, openPoints, type PointSource, planLines, visitLines } from "./lines.js";
+import { checkPatches } from "./patches.js";
 import { checkReversal, type Reversal, storedNoise, toleranceFor } from "./reversal.js";
 import { checkSlopes } from "./slopes.js";
 import { checkMesh, checkSplittings, pairWeight } from "./splittings.js";
@@ -94,7 +95,7 @@ const isFullMesh = ({ facts }: Grid): boolean =>
  * Only lines of a full mesh can be compared: of reduced lists only the level is looked at. Throws a Fault for files that cannot be read.
  */
 export function checkHealth(grid: Grid, effort: HealthEffort, count?: Count): Health {
-  const level = count === undefined ? [] : checkLevel(grid.facts, count);
+  const level = [...(count === undefined ? [] : checkLevel(grid.facts, count)), ...checkPatches(grid)];
   if (!isFullMesh(grid)) return { ...unknownHealth, findings: level };
   const source = openPoints(grid);
   try {
